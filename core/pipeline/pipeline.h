@@ -1,0 +1,119 @@
+// The one entry for the window and the command line: drawing -> contours -> path -> plan -> tight spots -> files.
+// mm, s.
+#pragma once
+
+#include <memory>
+#include <optional>
+#include <string>
+#include <vector>
+
+#include "core/base/result.h"
+#include "core/base/run_control.h"
+#include "core/contour/contour.h"
+#include "core/limits/limits.h"
+#include "core/path/path.h"
+#include "core/plan/plan.h"
+#include "core/read/drawing.h"
+
+namespace kf::pipeline {
+
+struct OpenOptions {
+  std::optional<double> millimetresPerUnit;  // for a drawing that does not say; it does not override one that does
+  bool allowSkipped = false;
+  double chainTolerance = 0.01;  // mm
+  std::vector<std::string> layers;
+};
+
+// A drawing, read, scaled to mm and chained. Shared and immutable.
+struct OpenedDrawing {
+  std::string path;    // as given
+  std::string name;    // file name
+  std::string format;
+  std::string units;   // the drawing's own
+  std::string sha256;  // of the file's bytes, hex
+  std::vector<contour::Contour> contours;
+  std::vector<read::Skipped> skipped, ignored;
+  std::vector<std::string> warnings;
+  curve::Box bounds;
+};
+
+// Fails  as read::readDrawing; also unsupported: unit unknown and not given; entities that can't be used without
+//        allowSkipped (their count and kinds are named).
+Result<OpenedDrawing> openDrawing(const std::string& path, const OpenOptions& options, RunControl& control);
+
+struct PlanOptions {
+  std::optional<plan::Law> law;              // empty: jerk where a jerk limit is given, else acceleration
+  plan::Joints joints = plan::Joints::blend;
+  std::size_t targetNodes = 2000;
+};
+
+// A place where speed is lost against the programmed feed.
+struct TightSpot {
+  double s = 0.0, x = 0.0, y = 0.0;
+  double radius = 0.0;      // mm; infinite on a straight, 0 at a tangent break
+  double speed = 0.0;       // mm/s, the slowest there
+  double timeLost = 0.0;    // s, against driving the same stretch at the programmed feed
+  double from = 0.0, to = 0.0;  // the stretch, arc length
+  LimitName limitedBy = LimitName::feed;
+};
+
+// Geometry of one contour: what inspect needs.
+struct ContourFacts {
+  int number = 0;  // 1-based
+  std::string name;
+  bool closed = false;
+  double length = 0.0;
+  double minRadius = 0.0;        // mm; infinite when there is no bend
+  double maxCurvature = 0.0;
+  std::vector<contour::Joint> joints;  // tangent breaks and curvature steps only
+};
+
+struct PlannedContour {
+  ContourFacts facts;
+  std::shared_ptr<const path::Path> path;
+  plan::Plan plan;
+  double meanFeed = 0.0;  // mm/s
+  std::vector<TightSpot> tightSpots;  // worst first, by time lost
+  std::vector<plan::Price> prices;    // largest first
+};
+
+// Path and facts of one contour; independent of limits, so that a limit change can reuse it.
+struct PreparedContour {
+  ContourFacts facts;
+  std::shared_ptr<const path::Path> path;
+};
+Result<PreparedContour> prepareContour(const contour::Contour& contour, int number, const PlanOptions& options,
+                                       RunControl& control);
+
+// Geometric tight spots (local curvature maxima and tangent breaks, tightest first) for inspect.
+std::vector<TightSpot> geometricTightSpots(const path::Path& path);
+
+// `withPrices` re-plans once for each limit.
+Result<PlannedContour> planContour(const PreparedContour& prepared, const limits::Limits& limits,
+                                   const PlanOptions& options, bool withPrices, RunControl& control);
+
+// One exported row.
+enum class Sampling { chord, time, length };
+
+struct PointListRequest {
+  std::string outputPath;
+  Sampling sampling = Sampling::time;
+  double step = 0.001;  // mm of chord error, s, or mm
+  bool force = false;   // replace an existing file
+};
+
+// Samples the plans, writes the point list whole or not at all, and reads it back.
+// Fails  cannotWrite  the file exists and force is not set, or writing or comparing failed.
+Result<void> exportPoints(const OpenedDrawing& drawing, const std::vector<PlannedContour>& contours,
+                          const limits::Limits& limits, const PointListRequest& request, RunControl& control);
+
+// The summary document (format kappafeed-summary) as JSON text. `limits` null: inspect.
+struct SummaryInput {
+  const OpenedDrawing* drawing = nullptr;
+  std::vector<ContourFacts> facts;             // inspect
+  std::vector<std::vector<TightSpot>> spots;   // inspect
+  const std::vector<PlannedContour>* plans = nullptr;  // plan
+};
+std::string summaryJson(const SummaryInput& input);
+
+}  // namespace kf::pipeline

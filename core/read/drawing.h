@@ -1,0 +1,50 @@
+// What a reader hands over: loose curves in the drawing's own unit, and everything it could not use.
+// Lengths in the drawing's unit until scaled by the pipeline.
+#pragma once
+
+#include <optional>
+#include <string>
+#include <string_view>
+#include <vector>
+
+#include "core/base/result.h"
+#include "core/base/run_control.h"
+#include "core/contour/chain.h"
+
+namespace kf::read {
+
+// Entities of one kind that were not used, and why.
+struct Skipped {
+  std::string kind;     // "TEXT"
+  std::string reason;   // "text has no contour"
+  std::size_t count = 0;
+  std::string firstPlace;  // "line 812"
+};
+
+struct Drawing {
+  std::vector<contour::LooseCurve> curves;
+  std::vector<Skipped> skipped;           // geometry that was left out: needs the user's yes
+  std::vector<Skipped> ignored;           // annotation and the like that never was geometry: only reported
+  std::optional<double> millimetresPerUnit;  // empty when the file does not say
+  std::string unitName;                   // "mm", "in", ... or "" when the file does not say
+  std::string format;                     // "DXF", "CSV", ...
+  std::vector<std::string> layers;        // in order of first use
+};
+
+struct ReadOptions {
+  std::vector<std::string> layers;  // only these; empty: all that are on
+  std::size_t maxCurves = 4'000'000;
+  std::size_t maxBytes = std::size_t{1} << 30;
+};
+
+// Reads by content and extension. `name` is for messages ("rib.dxf").
+//
+// Fails  cannotRead  damaged or truncated input, with line or offset; too large.
+//        unsupported a format we don't read, with those we do.
+//        cancelled   by `control`.
+Result<Drawing> readDrawing(const std::string& path, const ReadOptions& options, RunControl& control);
+
+Result<Drawing> readDxf(std::string_view bytes, std::string_view name, const ReadOptions& options, RunControl& control);
+Result<Drawing> readCsvPoints(std::string_view bytes, std::string_view name, const ReadOptions& options, RunControl& control);
+
+}  // namespace kf::read
