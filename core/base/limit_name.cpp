@@ -5,10 +5,22 @@
 namespace kf {
 namespace {
 
-constexpr std::array<std::string_view, kLimitNameCount> kTexts = {
-    "feed",          "axis-speed-x", "axis-speed-y", "centripetal",         "chord",
-    "block-period",  "contour-error", "chip-load",   "axis-acceleration-x", "axis-acceleration-y",
-    "tangential-acceleration", "axis-jerk-x", "axis-jerk-y", "tangential-jerk", "joint", "stop"};
+constexpr std::array<std::string_view, kLimitNameCount> kTexts = {"feed",
+                                                                  "axis-speed-x",
+                                                                  "axis-speed-y",
+                                                                  "centripetal",
+                                                                  "chord",
+                                                                  "block-period",
+                                                                  "contour-error",
+                                                                  "chip-load",
+                                                                  "axis-acceleration-x",
+                                                                  "axis-acceleration-y",
+                                                                  "tangential-acceleration",
+                                                                  "axis-jerk-x",
+                                                                  "axis-jerk-y",
+                                                                  "tangential-jerk",
+                                                                  "joint",
+                                                                  "stop"};
 
 }  // namespace
 
@@ -18,7 +30,9 @@ std::array<LimitName, kLimitNameCount> allLimitNames() {
   return names;
 }
 
-std::string_view toText(LimitName name) { return kTexts[static_cast<std::size_t>(name)]; }
+std::string_view toText(LimitName name) {
+  return kTexts[static_cast<std::size_t>(name)];
+}
 
 std::optional<LimitName> limitNameFromText(std::string_view text) {
   for (LimitName name : allLimitNames()) {

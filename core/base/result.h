@@ -36,16 +36,28 @@ class [[nodiscard]] Result {
   bool ok() const { return content_.index() == 0; }
   explicit operator bool() const { return ok(); }
 
-  const T& value() const& { assert(ok()); return *std::get_if<0>(&content_); }
-  T& value() & { assert(ok()); return *std::get_if<0>(&content_); }
-  T&& value() && { assert(ok()); return std::move(*std::get_if<0>(&content_)); }
+  const T& value() const& {
+    assert(ok());
+    return *std::get_if<0>(&content_);
+  }
+  T& value() & {
+    assert(ok());
+    return *std::get_if<0>(&content_);
+  }
+  T&& value() && {
+    assert(ok());
+    return std::move(*std::get_if<0>(&content_));
+  }
   const T& operator*() const& { return value(); }
   T& operator*() & { return value(); }
   T&& operator*() && { return std::move(*this).value(); }
   const T* operator->() const { return &value(); }
   T* operator->() { return &value(); }
 
-  const Error& error() const { assert(!ok()); return *std::get_if<1>(&content_); }
+  const Error& error() const {
+    assert(!ok());
+    return *std::get_if<1>(&content_);
+  }
 
  private:
   std::variant<T, Error> content_;
@@ -59,7 +71,10 @@ class [[nodiscard]] Result<void> {
 
   bool ok() const { return !error_; }
   explicit operator bool() const { return ok(); }
-  const Error& error() const { assert(!ok()); return *error_; }
+  const Error& error() const {
+    assert(!ok());
+    return *error_;
+  }
 
  private:
   std::optional<Error> error_;

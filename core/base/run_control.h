@@ -6,7 +6,8 @@
 
 namespace kf {
 
-// One object a run. The worker calls report() and asks isCancelled(); anyone may call cancel() and progress().
+// One object a run. The worker calls report() and asks isCancelled(); anyone may call cancel() and
+// progress().
 class RunControl {
  public:
   void cancel() { cancelled_.store(true, std::memory_order_relaxed); }

@@ -17,24 +17,26 @@ struct LooseCurve {
 };
 
 struct ChainOptions {
-  double tolerance = 0.01;   // mm; ends no farther apart than this are joined, nearest first
-  bool acrossLayers = false; // join curves of different layers
+  double tolerance = 0.01;    // mm; ends no farther apart than this are joined, nearest first
+  bool acrossLayers = false;  // join curves of different layers
 };
 
 struct ChainReport {
-  std::vector<Contour> contours;   // in the order in which their first curve stands in the drawing
+  std::vector<Contour> contours;  // in the order in which their first curve stands in the drawing
   std::size_t zeroLengthDropped = 0;
-  double largestGap = 0.0;         // mm, over all joined ends
-  std::size_t branchPoints = 0;    // places where more than two ends meet; the straightest continuation is taken
+  double largestGap = 0.0;  // mm, over all joined ends
+  std::size_t branchPoints =
+      0;  // places where more than two ends meet; the straightest continuation is taken
 };
 
-// Joins ends that lie within the tolerance: at each place the pairs are made nearest first, and at a branch the
-// straightest continuation wins. The first curve of a contour keeps its own direction. A curve whose ends meet
-// is a closed contour of its own.
+// Joins ends that lie within the tolerance: at each place the pairs are made nearest first, and at a branch
+// the straightest continuation wins. The first curve of a contour keeps its own direction. A curve whose ends
+// meet is a closed contour of its own.
 //
 // Fails     invalidArgument  tolerance is not positive and finite; a curve has a value that is not finite.
 //           cancelled        by `control`.
 // Cost      O(n log n): ends are hashed into cells of the tolerance's size.
-Result<ChainReport> chain(const std::vector<LooseCurve>& curves, const ChainOptions& options, RunControl& control);
+Result<ChainReport> chain(const std::vector<LooseCurve>& curves, const ChainOptions& options,
+                          RunControl& control);
 
 }  // namespace kf::contour

@@ -30,26 +30,27 @@ enum class JointKind { smooth, tangentBreak, curvatureStep };
 
 // What happens between segment `before` and the next one.
 struct Joint {
-  std::size_t before = 0;       // index of the segment that ends here
-  double s = 0.0;               // arc length from the start of the contour, mm
+  std::size_t before = 0;  // index of the segment that ends here
+  double s = 0.0;          // arc length from the start of the contour, mm
   curve::Vec2 point;
   JointKind kind = JointKind::smooth;
-  double turn = 0.0;            // change of direction, rad, left positive, -pi..pi
-  double curvatureChange = 0.0; // 1/mm
-  double gap = 0.0;             // distance between the two ends, mm
+  double turn = 0.0;             // change of direction, rad, left positive, -pi..pi
+  double curvatureChange = 0.0;  // 1/mm
+  double gap = 0.0;              // distance between the two ends, mm
 };
 
 struct JointOptions {
-  double angleTolerance = 1e-4;             // rad; a smaller turn counts as smooth
-  double curvatureTolerance = 1e-6;         // 1/mm; and relative to the larger curvature, 1e-4
+  double angleTolerance = 1e-4;      // rad; a smaller turn counts as smooth
+  double curvatureTolerance = 1e-6;  // 1/mm; and relative to the larger curvature, 1e-4
 };
 
 // All joints, the closing one last (its s is the whole length). Smooth ones too, so that callers can count.
-// Inner knots of splines that are not curvature-continuous count as joints: the contour must be split there first
-// (see splitAtKnots).
+// Inner knots of splines that are not curvature-continuous count as joints: the contour must be split there
+// first (see splitAtKnots).
 std::vector<Joint> findJoints(const Contour& contour, const JointOptions& options = {});
 
-// The same contour with every spline cut at its inner knots of multiplicity >= degree - 1, where curvature may jump.
+// The same contour with every spline cut at its inner knots of multiplicity >= degree - 1, where curvature
+// may jump.
 Contour splitAtKnots(const Contour& contour);
 
 double length(const Contour& contour);

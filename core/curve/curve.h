@@ -41,9 +41,9 @@ struct EllipticArc {
   double sweep = 1.0;
 };
 
-// Rational B-spline. Domain: degree 1..kMaxDegree; knots nondecreasing and finite, knots.size() = poles.size() +
-// degree + 1; weights empty (all one) or one a pole, all > 0; parameter from knots[degree] to knots[poles.size()].
-// Use makeNurbs to build one that is checked.
+// Rational B-spline. Domain: degree 1..kMaxDegree; knots nondecreasing and finite, knots.size() =
+// poles.size() + degree + 1; weights empty (all one) or one a pole, all > 0; parameter from knots[degree] to
+// knots[poles.size()]. Use makeNurbs to build one that is checked.
 struct Nurbs {
   int degree = 3;
   std::vector<double> knots;
@@ -54,17 +54,21 @@ struct Nurbs {
 inline constexpr int kMaxDegree = 25;
 
 // Fails  invalidArgument  any rule of Nurbs is broken; the message names the first one.
-Result<Nurbs> makeNurbs(int degree, std::vector<double> knots, std::vector<Vec2> poles, std::vector<double> weights = {});
+Result<Nurbs> makeNurbs(int degree, std::vector<double> knots, std::vector<Vec2> poles,
+                        std::vector<double> weights = {});
 
 // A periodic spline given the usual way (poles not repeated, knots over one period): the same curve, clamped.
 // `knots` has poles.size() + 1 distinct-or-repeated values over the period [knots.front(), knots.back()].
 // Fails  invalidArgument  as makeNurbs.
-Result<Nurbs> makePeriodicNurbs(int degree, std::vector<double> knots, std::vector<Vec2> poles, std::vector<double> weights = {});
+Result<Nurbs> makePeriodicNurbs(int degree, std::vector<double> knots, std::vector<Vec2> poles,
+                                std::vector<double> weights = {});
 
-// Cubic spline through `points` with chord-length parameters, C2 inside; end tangents are free (natural end) where the
-// optional vector is null. Closed and periodic when the first point equals the last and both tangents are null.
-// Fails  invalidArgument  fewer than two points, two neighbours equal, or a value that is not finite.
-Result<Nurbs> interpolateCubic(const std::vector<Vec2>& points, const Vec2* startTangent = nullptr, const Vec2* endTangent = nullptr);
+// Cubic spline through `points` with chord-length parameters, C2 inside; end tangents are free (natural end)
+// where the optional vector is null. Closed and periodic when the first point equals the last and both
+// tangents are null. Fails  invalidArgument  fewer than two points, two neighbours equal, or a value that is
+// not finite.
+Result<Nurbs> interpolateCubic(const std::vector<Vec2>& points, const Vec2* startTangent = nullptr,
+                               const Vec2* endTangent = nullptr);
 
 // One curve of any kind, as a value.
 class Curve {
@@ -104,8 +108,9 @@ class Curve {
   std::variant<Line, Arc, EllipticArc, Nurbs> shape_;
 };
 
-// What differs from the parametrisation: unit tangent, signed curvature (1/mm, left turn positive) and its slope
-// along arc length (1/mm^2). `regular` is false where the first derivative vanishes; then the rest is 0.
+// What differs from the parametrisation: unit tangent, signed curvature (1/mm, left turn positive) and its
+// slope along arc length (1/mm^2). `regular` is false where the first derivative vanishes; then the rest is
+// 0.
 //   k = (x'y'' - y'x'') / |c'|^3,   dk/ds = (x'y''' - y'x''') / |c'|^4 - 3 k (c'.c'') / |c'|^3
 struct Bend {
   Vec2 tangent;

@@ -10,9 +10,21 @@ struct Vec2 {
   double x = 0.0;
   double y = 0.0;
 
-  Vec2& operator+=(Vec2 o) { x += o.x; y += o.y; return *this; }
-  Vec2& operator-=(Vec2 o) { x -= o.x; y -= o.y; return *this; }
-  Vec2& operator*=(double f) { x *= f; y *= f; return *this; }
+  Vec2& operator+=(Vec2 o) {
+    x += o.x;
+    y += o.y;
+    return *this;
+  }
+  Vec2& operator-=(Vec2 o) {
+    x -= o.x;
+    y -= o.y;
+    return *this;
+  }
+  Vec2& operator*=(double f) {
+    x *= f;
+    y *= f;
+    return *this;
+  }
   friend Vec2 operator+(Vec2 a, Vec2 b) { return {a.x + b.x, a.y + b.y}; }
   friend Vec2 operator-(Vec2 a, Vec2 b) { return {a.x - b.x, a.y - b.y}; }
   friend Vec2 operator-(Vec2 a) { return {-a.x, -a.y}; }
@@ -22,19 +34,31 @@ struct Vec2 {
   friend bool operator==(Vec2 a, Vec2 b) { return a.x == b.x && a.y == b.y; }
 };
 
-inline double dot(Vec2 a, Vec2 b) { return a.x * b.x + a.y * b.y; }
+inline double dot(Vec2 a, Vec2 b) {
+  return a.x * b.x + a.y * b.y;
+}
 // z component of a x b: positive when b lies to the left of a.
-inline double cross(Vec2 a, Vec2 b) { return a.x * b.y - a.y * b.x; }
-inline double norm(Vec2 a) { return std::hypot(a.x, a.y); }
-inline double distance(Vec2 a, Vec2 b) { return norm(a - b); }
+inline double cross(Vec2 a, Vec2 b) {
+  return a.x * b.y - a.y * b.x;
+}
+inline double norm(Vec2 a) {
+  return std::hypot(a.x, a.y);
+}
+inline double distance(Vec2 a, Vec2 b) {
+  return norm(a - b);
+}
 // `a` turned a quarter to the left.
-inline Vec2 leftOf(Vec2 a) { return {-a.y, a.x}; }
+inline Vec2 leftOf(Vec2 a) {
+  return {-a.y, a.x};
+}
 // Unit vector along `a`; (0, 0) stays (0, 0).
 inline Vec2 unit(Vec2 a) {
   const double n = norm(a);
   return n > 0.0 ? a / n : a;
 }
-inline bool isFinite(Vec2 a) { return std::isfinite(a.x) && std::isfinite(a.y); }
+inline bool isFinite(Vec2 a) {
+  return std::isfinite(a.x) && std::isfinite(a.y);
+}
 
 // Point p goes to (xx p.x + xy p.y + dx, yx p.x + yy p.y + dy).
 struct Affine2 {

@@ -35,27 +35,27 @@ struct Limits {
   std::optional<double> chordTolerance;  // mm
   std::optional<double> blockPeriod;     // s
   std::optional<int> lookaheadBlocks;
-  std::optional<double> positionGain;    // 1/s
-  std::optional<double> contourError;    // mm
+  std::optional<double> positionGain;  // 1/s
+  std::optional<double> contourError;  // mm
 
-  std::optional<double> toolDiameter;    // mm
+  std::optional<double> toolDiameter;  // mm
   Side side = Side::on;
   std::optional<int> teeth;
-  std::optional<double> spindleRpm;      // 1/min
-  std::optional<double> feedPerTooth;    // mm
-  std::optional<double> radialDepth;     // mm
+  std::optional<double> spindleRpm;    // 1/min
+  std::optional<double> feedPerTooth;  // mm
+  std::optional<double> radialDepth;   // mm
 
   friend bool operator==(const Limits&, const Limits&) = default;
 };
 
-// One number of the file: its dotted name ("axes.X.speed_mm_per_min"), its unit as shown ("mm/min"), a short label of
-// the trade ("X speed"), and access in the file's unit. The single table from which reading, writing, --set and the
-// window's panel are made.
+// One number of the file: its dotted name ("axes.X.speed_mm_per_min"), its unit as shown ("mm/min"), a short
+// label of the trade ("X speed"), and access in the file's unit. The single table from which reading,
+// writing, --set and the window's panel are made.
 struct Field {
   std::string_view name;
   std::string_view unit;
   std::string_view label;
-  std::string_view group;    // "axes", "path", "control", "tool"
+  std::string_view group;  // "axes", "path", "control", "tool"
   bool integer = false;
   std::optional<double> (*get)(const Limits&);
   void (*put)(Limits&, std::optional<double>);
@@ -63,19 +63,22 @@ struct Field {
 const std::vector<Field>& fields();
 const Field* findField(std::string_view dottedName);
 
-// Fails  cannotRead  not JSON; wrong "format" or a newer "version"; an unknown key (the nearest known one is named);
-//                    a value that is not a positive finite number or null. The message names `source` and the key.
+// Fails  cannotRead  not JSON; wrong "format" or a newer "version"; an unknown key (the nearest known one is
+// named);
+//                    a value that is not a positive finite number or null. The message names `source` and the
+//                    key.
 Result<Limits> parseLimits(std::string_view json, std::string_view source);
 // Fails  cannotRead  the file can't be opened, is larger than 1 MiB, or parseLimits refuses it.
 Result<Limits> readLimitsFile(const std::string& path);
 // The file's text; reading it back gives an equal value.
 std::string toJson(const Limits& limits);
 
-// Sets one value by "NAME=VALUE" as --set does; VALUE "null" or "none" removes the limit, tool.side takes on|left|right.
-// Fails  invalidArgument  unknown name (the nearest is named), or a value outside its domain.
+// Sets one value by "NAME=VALUE" as --set does; VALUE "null" or "none" removes the limit, tool.side takes
+// on|left|right. Fails  invalidArgument  unknown name (the nearest is named), or a value outside its domain.
 Result<void> set(Limits& limits, std::string_view assignment);
 
-// Whether a plan can be made. Fails  invalidArgument  the feed is missing, or an axis lacks speed and acceleration.
+// Whether a plan can be made. Fails  invalidArgument  the feed is missing, or an axis lacks speed and
+// acceleration.
 Result<void> validateForPlan(const Limits& limits);
 
 }  // namespace kf::limits

@@ -36,18 +36,18 @@ struct Sample {
   double dk = 0.0;            // its slope along arc length
 };
 
-// Structure of arrays, one entry a node. Where tangent, curvature or its slope jumps there are two nodes at the same s:
-// the first carries the values before, the second those after, and breakAfter of the first says which kind it is.
-// Invariants: s[0] = 0, s nondecreasing, s.back() = length; s[i] == s[i+1] exactly when breakAfter[i] != none; at least
-// one ordinary cell between two breaks.
+// Structure of arrays, one entry a node. Where tangent, curvature or its slope jumps there are two nodes at
+// the same s: the first carries the values before, the second those after, and breakAfter of the first says
+// which kind it is. Invariants: s[0] = 0, s nondecreasing, s.back() = length; s[i] == s[i+1] exactly when
+// breakAfter[i] != none; at least one ordinary cell between two breaks.
 class Path {
  public:
   bool closed = false;
   double length = 0.0;
   std::vector<double> s, x, y, tx, ty, k, dk;
-  std::vector<double> u;                  // parameter in the segment's curve
-  std::vector<std::uint32_t> segment;     // index into contour().segments
-  std::vector<BreakKind> breakAfter;      // size s.size(); the last is the closing joint's kind (none when open)
+  std::vector<double> u;               // parameter in the segment's curve
+  std::vector<std::uint32_t> segment;  // index into contour().segments
+  std::vector<BreakKind> breakAfter;   // size s.size(); the last is the closing joint's kind (none when open)
 
   std::size_t size() const { return s.size(); }
   const contour::Contour& contour() const { return *contour_; }
@@ -63,11 +63,12 @@ class Path {
   std::shared_ptr<const contour::Contour> contour_;
 };
 
-// Places nodes: on every joint and knot, curvature extremum and zero of x' or y', and between them by equal shares of a
-// density that grows with curvature and its slope.
+// Places nodes: on every joint and knot, curvature extremum and zero of x' or y', and between them by equal
+// shares of a density that grows with curvature and its slope.
 //
 // Fails     invalidArgument  the contour is empty, has a value that is not finite, or zero length.
-//           notConverged     an arc length does not converge (a spline with an inner cusp is named by its source).
+//           notConverged     an arc length does not converge (a spline with an inner cusp is named by its
+//           source).
 // Accuracy  s at nodes to 1e-10 relative.
 // Cost      O(nodes + spans).
 Result<Path> buildPath(const contour::Contour& contour, const Options& options, RunControl& control);

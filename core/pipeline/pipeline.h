@@ -1,5 +1,5 @@
-// The one entry for the window and the command line: drawing -> contours -> path -> plan -> tight spots -> files.
-// mm, s.
+// The one entry for the window and the command line: drawing -> contours -> path -> plan -> tight spots ->
+// files. mm, s.
 #pragma once
 
 #include <memory>
@@ -18,7 +18,8 @@
 namespace kf::pipeline {
 
 struct OpenOptions {
-  std::optional<double> millimetresPerUnit;  // for a drawing that does not say; it does not override one that does
+  std::optional<double>
+      millimetresPerUnit;  // for a drawing that does not say; it does not override one that does
   bool allowSkipped = false;
   double chainTolerance = 0.01;  // mm
   std::vector<std::string> layers;
@@ -26,8 +27,8 @@ struct OpenOptions {
 
 // A drawing, read, scaled to mm and chained. Shared and immutable.
 struct OpenedDrawing {
-  std::string path;    // as given
-  std::string name;    // file name
+  std::string path;  // as given
+  std::string name;  // file name
   std::string format;
   std::string units;   // the drawing's own
   std::string sha256;  // of the file's bytes, hex
@@ -37,12 +38,13 @@ struct OpenedDrawing {
   curve::Box bounds;
 };
 
-// Fails  as read::readDrawing; also unsupported: unit unknown and not given; entities that can't be used without
+// Fails  as read::readDrawing; also unsupported: unit unknown and not given; entities that can't be used
+// without
 //        allowSkipped (their count and kinds are named).
 Result<OpenedDrawing> openDrawing(const std::string& path, const OpenOptions& options, RunControl& control);
 
 struct PlanOptions {
-  std::optional<plan::Law> law;              // empty: jerk where a jerk limit is given, else acceleration
+  std::optional<plan::Law> law;  // empty: jerk where a jerk limit is given, else acceleration
   plan::Joints joints = plan::Joints::blend;
   std::size_t targetNodes = 2000;
 };
@@ -50,9 +52,9 @@ struct PlanOptions {
 // A place where speed is lost against the programmed feed.
 struct TightSpot {
   double s = 0.0, x = 0.0, y = 0.0;
-  double radius = 0.0;      // mm; infinite on a straight, 0 at a tangent break
-  double speed = 0.0;       // mm/s, the slowest there
-  double timeLost = 0.0;    // s, against driving the same stretch at the programmed feed
+  double radius = 0.0;          // mm; infinite on a straight, 0 at a tangent break
+  double speed = 0.0;           // mm/s, the slowest there
+  double timeLost = 0.0;        // s, against driving the same stretch at the programmed feed
   double from = 0.0, to = 0.0;  // the stretch, arc length
   LimitName limitedBy = LimitName::feed;
 };
@@ -63,7 +65,7 @@ struct ContourFacts {
   std::string name;
   bool closed = false;
   double length = 0.0;
-  double minRadius = 0.0;        // mm; infinite when there is no bend
+  double minRadius = 0.0;  // mm; infinite when there is no bend
   double maxCurvature = 0.0;
   std::vector<contour::Joint> joints;  // tangent breaks and curvature steps only
 };
@@ -72,7 +74,7 @@ struct PlannedContour {
   ContourFacts facts;
   std::shared_ptr<const path::Path> path;
   plan::Plan plan;
-  double meanFeed = 0.0;  // mm/s
+  double meanFeed = 0.0;              // mm/s
   std::vector<TightSpot> tightSpots;  // worst first, by time lost
   std::vector<plan::Price> prices;    // largest first
 };
@@ -82,8 +84,8 @@ struct PreparedContour {
   ContourFacts facts;
   std::shared_ptr<const path::Path> path;
 };
-Result<PreparedContour> prepareContour(const contour::Contour& contour, int number, const PlanOptions& options,
-                                       RunControl& control);
+Result<PreparedContour> prepareContour(const contour::Contour& contour, int number,
+                                       const PlanOptions& options, RunControl& control);
 
 // Geometric tight spots (local curvature maxima and tangent breaks, tightest first) for inspect.
 std::vector<TightSpot> geometricTightSpots(const path::Path& path);
@@ -110,8 +112,8 @@ Result<void> exportPoints(const OpenedDrawing& drawing, const std::vector<Planne
 // The summary document (format kappafeed-summary) as JSON text. `limits` null: inspect.
 struct SummaryInput {
   const OpenedDrawing* drawing = nullptr;
-  std::vector<ContourFacts> facts;             // inspect
-  std::vector<std::vector<TightSpot>> spots;   // inspect
+  std::vector<ContourFacts> facts;                     // inspect
+  std::vector<std::vector<TightSpot>> spots;           // inspect
   const std::vector<PlannedContour>* plans = nullptr;  // plan
 };
 std::string summaryJson(const SummaryInput& input);

@@ -23,7 +23,7 @@ struct Options {
 
 // The largest speed that limits on speed alone allow at each node, and which of them it is.
 struct Caps {
-  std::vector<double> q;              // v^2, mm^2/s^2, one a node of the path
+  std::vector<double> q;  // v^2, mm^2/s^2, one a node of the path
   std::vector<LimitName> limitedBy;
 };
 // Cost  O(nodes).
@@ -37,12 +37,12 @@ struct Price {
 };
 
 struct Plan {
-  schedule::Schedule schedule;   // strictly rising s: breaks of the path appear once
-  Caps caps;                     // at the path's nodes
-  std::vector<double> q;         // planned v^2 at the path's nodes
+  schedule::Schedule schedule;       // strictly rising s: breaks of the path appear once
+  Caps caps;                         // at the path's nodes
+  std::vector<double> q;             // planned v^2 at the path's nodes
   std::vector<LimitName> limitedBy;  // at the path's nodes
   double time = 0.0;
-  double lowerBound = 0.0;       // no motion under the same limits, discretised on the same nodes, takes less
+  double lowerBound = 0.0;  // no motion under the same limits, discretised on the same nodes, takes less
   std::vector<double> timeByLimit;  // index LimitName; sums to time
 };
 
@@ -50,10 +50,11 @@ struct Plan {
 //        infeasible       the limits allow no motion at some place (the message says where).
 //        cancelled        by `control`.
 // Cost   O(nodes).
-Result<Plan> makePlan(const path::Path& path, const limits::Limits& limits, const Options& options, RunControl& control);
+Result<Plan> makePlan(const path::Path& path, const limits::Limits& limits, const Options& options,
+                      RunControl& control);
 
 // Re-plans with each present limit raised by `changePercent` and reports what that saves; largest first.
-Result<std::vector<Price>> prices(const path::Path& path, const limits::Limits& limits, const Options& options,
-                                  double changePercent, RunControl& control);
+Result<std::vector<Price>> prices(const path::Path& path, const limits::Limits& limits,
+                                  const Options& options, double changePercent, RunControl& control);
 
 }  // namespace kf::plan

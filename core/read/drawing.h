@@ -15,20 +15,20 @@ namespace kf::read {
 
 // Entities of one kind that were not used, and why.
 struct Skipped {
-  std::string kind;     // "TEXT"
-  std::string reason;   // "text has no contour"
+  std::string kind;    // "TEXT"
+  std::string reason;  // "text has no contour"
   std::size_t count = 0;
   std::string firstPlace;  // "line 812"
 };
 
 struct Drawing {
   std::vector<contour::LooseCurve> curves;
-  std::vector<Skipped> skipped;           // geometry that was left out: needs the user's yes
-  std::vector<Skipped> ignored;           // annotation and the like that never was geometry: only reported
+  std::vector<Skipped> skipped;              // geometry that was left out: needs the user's yes
+  std::vector<Skipped> ignored;              // annotation and the like that never was geometry: only reported
   std::optional<double> millimetresPerUnit;  // empty when the file does not say
-  std::string unitName;                   // "mm", "in", ... or "" when the file does not say
-  std::string format;                     // "DXF", "CSV", ...
-  std::vector<std::string> layers;        // in order of first use
+  std::string unitName;                      // "mm", "in", ... or "" when the file does not say
+  std::string format;                        // "DXF", "CSV", ...
+  std::vector<std::string> layers;           // in order of first use
 };
 
 struct ReadOptions {
@@ -44,7 +44,9 @@ struct ReadOptions {
 //        cancelled   by `control`.
 Result<Drawing> readDrawing(const std::string& path, const ReadOptions& options, RunControl& control);
 
-Result<Drawing> readDxf(std::string_view bytes, std::string_view name, const ReadOptions& options, RunControl& control);
-Result<Drawing> readCsvPoints(std::string_view bytes, std::string_view name, const ReadOptions& options, RunControl& control);
+Result<Drawing> readDxf(std::string_view bytes, std::string_view name, const ReadOptions& options,
+                        RunControl& control);
+Result<Drawing> readCsvPoints(std::string_view bytes, std::string_view name, const ReadOptions& options,
+                              RunControl& control);
 
 }  // namespace kf::read

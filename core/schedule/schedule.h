@@ -11,7 +11,8 @@ namespace kf::schedule {
 
 // How the motion runs inside one cell [s_i, s_i+1].
 enum class CellKind : unsigned char {
-  quadratic,  // v^2 = q + c1 u + c2 u^2, u = s - s_i; the time law is then elementary (linear, trigonometric, hyperbolic)
+  quadratic,  // v^2 = q + c1 u + c2 u^2, u = s - s_i; the time law is then elementary (linear, trigonometric,
+              // hyperbolic)
   jerkFromRest,  // u = J t^3 / 6, from rest
   jerkToRest,    // the mirror image: rest at s_i+1
 };
@@ -19,9 +20,9 @@ enum class CellKind : unsigned char {
 struct State {
   double t = 0.0;
   double s = 0.0;
-  double v = 0.0;   // ds/dt, mm/s
-  double a = 0.0;   // d2s/dt2, mm/s^2
-  double j = 0.0;   // d3s/dt3, mm/s^3
+  double v = 0.0;  // ds/dt, mm/s
+  double a = 0.0;  // d2s/dt2, mm/s^2
+  double j = 0.0;  // d3s/dt3, mm/s^3
   LimitName limitedBy = LimitName::feed;
 };
 
@@ -31,9 +32,10 @@ class Schedule {
   Schedule() = default;
   // v^2 linear in each cell (constant tangential acceleration).
   // Domain  s strictly rising; q >= 0; no two neighbours both 0; sizes equal; limitedBy one a node.
-  static Schedule constantAcceleration(std::vector<double> s, std::vector<double> q, std::vector<LimitName> limitedBy);
-  // v^2 quadratic in each cell: q at the nodes and dq/ds at the start of each cell (size nodes - 1); cells that begin or
-  // end at rest are jerk ramps through the other end's speed.
+  static Schedule constantAcceleration(std::vector<double> s, std::vector<double> q,
+                                       std::vector<LimitName> limitedBy);
+  // v^2 quadratic in each cell: q at the nodes and dq/ds at the start of each cell (size nodes - 1); cells
+  // that begin or end at rest are jerk ramps through the other end's speed.
   static Schedule constantJerkLike(std::vector<double> s, std::vector<double> q, std::vector<double> slope,
                                    std::vector<LimitName> limitedBy);
 
@@ -43,8 +45,8 @@ class Schedule {
   double time() const { return t_.empty() ? 0.0 : t_.back(); }
 
   const std::vector<double>& s() const { return s_; }
-  const std::vector<double>& q() const { return q_; }        // v^2 at the nodes
-  const std::vector<double>& t() const { return t_; }        // time at the nodes
+  const std::vector<double>& q() const { return q_; }  // v^2 at the nodes
+  const std::vector<double>& t() const { return t_; }  // time at the nodes
   const std::vector<LimitName>& limitedBy() const { return limitedBy_; }
 
   // Clamped to the domain; at a node the later cell. Cost O(log nodes), or amortised O(1) with a hint.

@@ -1,0 +1,147 @@
+// Joints, length, area and orientation of a contour.
+// Lengths in mm, angles in rad.
+#include "core/contour/contour.h"
+
+#include <algorithm>
+#include <cmath>
+
+#include "core/curve/arc_length.h"
+#include "core/numeric/gauss_legendre.h"
+
+namespace kf::contour {
+namespace {
+
+using curve::Bend;
+using curve::Curve;
+using curve::Side;
+using curve::Vec2;
+
+// The tangent and curvature as the end of the domain is approached; steps inward from a cusp or a doubled
+// pole.
+Bend bendAtEnd(const Curve& c, bool atStart) {
+  const double from = c.first(), to = c.last();
+  Bend b = curve::bend(c.jet(atStart ? from : to, atStart ? Side::right : Side::left));
+  for (double step = 1e-9; !b.regular && step < 1e-3; step *= 10.0) {
+    const double u = atStart ? from + step * (to - from) : to - step * (to - from);
+    b = curve::bend(c.jet(u, atStart ? Side::right : Side::left));
+  }
+  return b;
+}
+
+Joint jointBetween(const Curve& before, const Curve& after, const JointOptions& options) {
+  Joint joint;
+  joint.point = after.startPoint();
+  joint.gap = curve::distance(before.endPoint(), joint.point);
+  const Bend in = bendAtEnd(before, false), out = bendAtEnd(after, true);
+  joint.turn = std::atan2(curve::cross(in.tangent, out.tangent), curve::dot(in.tangent, out.tangent));
+  joint.curvatureChange = out.k - in.k;
+  const double larger = std::max(std::abs(in.k), std::abs(out.k));
+  if (std::abs(joint.turn) > options.angleTolerance) {
+    joint.kind = JointKind::tangentBreak;
+  } else if (std::abs(joint.curvatureChange) > std::max(options.curvatureTolerance, 1e-4 * larger)) {
+    joint.kind = JointKind::curvatureStep;
+  }
+  return joint;
+}
+
+// Twice the area swept about `origin`: the integral of (c - o) x c' du.
+double sweptTwice(const Curve& c, Vec2 origin) {
+  if (const curve::Line* line = c.asLine()) return curve::cross(line->a - origin, line->b - line->a);
+  std::vector<double> cuts{c.first()};
+  for (double u : c.breaks()) cuts.push_back(u);
+  cuts.push_back(c.last());
+  double sum = 0.0;
+  const auto rate = [&](double u) {
+    const curve::Jet j = c.jet(u);
+    return curve::cross(j.p - origin, j.d1);
+  };
+  for (std::size_t i = 0; i + 1 < cuts.size(); ++i) {
+    constexpr int kParts = 8;  // an arc of a full turn is then good to 1e-15
+    const double width = (cuts[i + 1] - cuts[i]) / kParts;
+    for (int part = 0; part < kParts; ++part) {
+      const double low = cuts[i] + part * width;
+      sum += numeric::gauss10(rate, low, part + 1 == kParts ? cuts[i + 1] : low + width);
+    }
+  }
+  return sum;
+}
+
+}  // namespace
+
+std::vector<Joint> findJoints(const Contour& contour, const JointOptions& options) {
+  std::vector<Joint> joints;
+  const std::size_t n = contour.segments.size();
+  double s = 0.0;
+  for (std::size_t i = 0; i < n; ++i) {
+    s += curve::totalLength(contour.segments[i].curve);
+    if (i + 1 == n && !contour.closed) break;
+    Joint joint = jointBetween(contour.segments[i].curve, contour.segments[(i + 1) % n].curve, options);
+    joint.before = i;
+    joint.s = s;
+    joints.push_back(joint);
+  }
+  return joints;
+}
+
+Contour splitAtKnots(const Contour& contour) {
+  Contour out = contour;
+  out.segments.clear();
+  for (const Segment& segment : contour.segments) {
+    const curve::Nurbs* spline = segment.curve.asNurbs();
+    std::vector<double> cuts;
+    if (spline != nullptr) {
+      const auto& knots = spline->knots;
+      for (double u : segment.curve.breaks()) {
+        const auto range = std::equal_range(knots.begin(), knots.end(), u);
+        if (range.second - range.first >= spline->degree - 1) cuts.push_back(u);
+      }
+    }
+    if (cuts.empty()) {
+      out.segments.push_back(segment);
+      continue;
+    }
+    double from = segment.curve.first();
+    cuts.push_back(segment.curve.last());
+    for (double to : cuts) {
+      out.segments.push_back({segment.curve.trimmed(from, to), segment.source});
+      from = to;
+    }
+  }
+  return out;
+}
+
+double length(const Contour& contour) {
+  double sum = 0.0;
+  for (const Segment& segment : contour.segments) sum += curve::totalLength(segment.curve);
+  return sum;
+}
+
+curve::Box bounds(const Contour& contour) {
+  curve::Box box;
+  for (const Segment& segment : contour.segments) box.include(segment.curve.bounds());
+  return box;
+}
+
+Contour reversed(const Contour& contour) {
+  Contour out = contour;
+  std::reverse(out.segments.begin(), out.segments.end());
+  for (Segment& segment : out.segments) segment.curve = segment.curve.reversed();
+  return out;
+}
+
+double signedArea(const Contour& contour) {
+  if (!contour.closed || contour.segments.empty()) return 0.0;
+  const Vec2 origin = contour.segments.front().curve.startPoint();
+  double twice = 0.0;
+  for (std::size_t i = 0; i < contour.segments.size(); ++i) {
+    const Curve& c = contour.segments[i].curve;
+    twice += sweptTwice(c, origin);
+    // A gap within the chaining tolerance is crossed straight.
+    const Vec2 end = c.endPoint(),
+               next = contour.segments[(i + 1) % contour.segments.size()].curve.startPoint();
+    twice += curve::cross(end - origin, next - end);
+  }
+  return 0.5 * twice;
+}
+
+}  // namespace kf::contour
