@@ -1,0 +1,89 @@
+// Caps on speed that follow from limits on speed alone, node by node.
+// mm, s.
+#include <algorithm>
+#include <cmath>
+
+#include "core/plan/plan.h"
+
+namespace kf::plan {
+namespace {
+
+constexpr double kNoCap = 1e300;
+
+// Keeps the lowest cap and its name.
+struct Lowest {
+  double q = kNoCap;
+  LimitName name = LimitName::feed;
+
+  void offer(double candidate, LimitName by) {
+    if (candidate < q) {
+      q = candidate;
+      name = by;
+    }
+  }
+  void offerSpeed(double v, LimitName by) { offer(v * v, by); }
+};
+
+// In one block period the motion is a chord of length v T, whose height over an arc of radius R is e:
+// (v T / 2)^2 = R^2 - (R - e)^2 = e (2 R - e). Source: Yeh & Hsu 2002 (from memory). A circle smaller than
+// the tolerance is still never skipped: its chord can't be longer than its diameter.
+double chordSpeed(double radius, double error, double period) {
+  if (radius <= error) return 2.0 * radius / period;
+  return 2.0 / period * std::sqrt(error * (2.0 * radius - error));
+}
+
+// Lines and arcs are one block each; the control can't start a new block sooner than one period after the
+// last.
+std::vector<double> blockSpeeds(const path::Path& path, double period) {
+  const auto& segments = path.contour().segments;
+  std::vector<double> lengths(segments.size(), 0.0);
+  for (std::size_t i = 0; i + 1 < path.size(); ++i) {
+    if (path.segment[i] == path.segment[i + 1]) lengths[path.segment[i]] += path.s[i + 1] - path.s[i];
+  }
+  std::vector<double> speeds(segments.size(), std::sqrt(kNoCap));
+  for (std::size_t i = 0; i < segments.size(); ++i) {
+    const curve::Curve& c = segments[i].curve;
+    if (c.asLine() != nullptr || c.asArc() != nullptr) speeds[i] = lengths[i] / period;
+  }
+  return speeds;
+}
+
+}  // namespace
+
+Caps speedCaps(const path::Path& path, const limits::Limits& limits) {
+  Caps caps;
+  const std::size_t n = path.size();
+  caps.q.resize(n);
+  caps.limitedBy.resize(n);
+  std::vector<double> blocks;
+  if (limits.blockPeriod) blocks = blockSpeeds(path, *limits.blockPeriod);
+  const bool chips = limits.feedPerTooth && limits.teeth && limits.spindleRpm;
+  for (std::size_t i = 0; i < n; ++i) {
+    Lowest lowest;
+    const double tx = std::abs(path.tx[i]), ty = std::abs(path.ty[i]), k = std::abs(path.k[i]);
+    if (limits.feed) lowest.offerSpeed(*limits.feed, LimitName::feed);
+    if (chips)
+      lowest.offerSpeed(*limits.feedPerTooth * *limits.teeth * *limits.spindleRpm / 60.0,
+                        LimitName::chipLoad);
+    if (limits.x.speed && tx > 0.0) lowest.offerSpeed(*limits.x.speed / tx, LimitName::axisSpeedX);
+    if (limits.y.speed && ty > 0.0) lowest.offerSpeed(*limits.y.speed / ty, LimitName::axisSpeedY);
+    if (limits.blockPeriod) lowest.offerSpeed(blocks[path.segment[i]], LimitName::blockPeriod);
+    if (k > 0.0) {
+      if (limits.centripetalAcceleration)
+        lowest.offer(*limits.centripetalAcceleration / k, LimitName::centripetal);
+      if (limits.chordTolerance && limits.blockPeriod) {
+        lowest.offerSpeed(chordSpeed(1.0 / k, *limits.chordTolerance, *limits.blockPeriod), LimitName::chord);
+      }
+      // A first-order position loop with gain K trails by v/K and cuts a bend short by v^2 / (2 R K^2).
+      if (limits.positionGain && limits.contourError) {
+        lowest.offer(2.0 * *limits.contourError * *limits.positionGain * *limits.positionGain / k,
+                     LimitName::contourError);
+      }
+    }
+    caps.q[i] = lowest.q;
+    caps.limitedBy[i] = lowest.name;
+  }
+  return caps;
+}
+
+}  // namespace kf::plan
