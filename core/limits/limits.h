@@ -16,6 +16,8 @@ struct Axis {
   std::optional<double> speed;         // mm/s
   std::optional<double> acceleration;  // mm/s^2
   std::optional<double> jerk;          // mm/s^3
+
+  friend bool operator==(const Axis&, const Axis&) = default;
 };
 
 enum class Side { on, left, right };
@@ -62,6 +64,14 @@ struct Field {
 };
 const std::vector<Field>& fields();
 const Field* findField(std::string_view dottedName);
+// The names of fields() and "tool.side".
+std::vector<std::string_view> knownNames();
+
+std::string_view toText(Side side);
+std::optional<Side> sideFromText(std::string_view text);
+
+// Fails  invalidArgument  `value` is not positive and finite, or not whole where the field counts.
+Result<void> checkValue(const Field& field, double value);
 
 // Fails  cannotRead  not JSON; wrong "format" or a newer "version"; an unknown key (the nearest known one is
 // named);

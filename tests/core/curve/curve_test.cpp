@@ -11,7 +11,8 @@ namespace {
 
 // The NURBS Book, example 4.1 (from memory; recomputed with scipy).
 TEST(RationalSpline, GivesThePointOfTheTextbookExample) {
-  const auto spline = makeNurbs(2, {0, 0, 0, 1, 2, 3, 3, 3}, {{0, 0}, {1, 1}, {3, 2}, {4, 1}, {5, -1}}, {1, 4, 1, 1, 1});
+  const auto spline =
+      makeNurbs(2, {0, 0, 0, 1, 2, 3, 3, 3}, {{0, 0}, {1, 1}, {3, 2}, {4, 1}, {5, -1}}, {1, 4, 1, 1, 1});
   ASSERT_TRUE(spline);
   const Vec2 p = Curve(*spline).point(1.0);
   EXPECT_NEAR(p.x, 7.0 / 5.0, 1e-15);
@@ -39,8 +40,9 @@ TEST(EllipseLength, AgreesWithTheEllipticIntegral) {
 }
 
 TEST(TrimmedSpline, IsTheSameCurve) {
-  const auto spline = makeNurbs(3, {0, 0, 0, 0, 1, 2, 2, 3, 3, 3, 3}, {{0, 0}, {1, 2}, {3, 3}, {4, 0}, {6, 1}, {7, 3}, {9, 0}},
-                                {1, 2, 1, 0.5, 1, 3, 1});
+  const auto spline =
+      makeNurbs(3, {0, 0, 0, 0, 1, 2, 2, 3, 3, 3, 3},
+                {{0, 0}, {1, 2}, {3, 3}, {4, 0}, {6, 1}, {7, 3}, {9, 0}}, {1, 2, 1, 0.5, 1, 3, 1});
   ASSERT_TRUE(spline);
   const Curve whole(*spline), part = whole.trimmed(0.3, 2.6);
   for (double u = 0.3; u <= 2.6; u += 0.1) {
