@@ -49,6 +49,9 @@ struct PlanOptions {
   std::size_t targetNodes = 2000;
 };
 
+// The law that these options and limits ask for.
+plan::Law lawFor(const limits::Limits& limits, const PlanOptions& options);
+
 // A place where speed is lost against the programmed feed.
 struct TightSpot {
   double s = 0.0, x = 0.0, y = 0.0;
@@ -103,6 +106,11 @@ struct PointListRequest {
   double step = 0.001;  // mm of chord error, s, or mm
   bool force = false;   // replace an existing file
 };
+
+// The point list's text, as exportPoints writes it.
+Result<std::string> pointListFor(const OpenedDrawing& drawing, const std::vector<PlannedContour>& contours,
+                                 const limits::Limits& limits, const PointListRequest& request,
+                                 RunControl& control);
 
 // Samples the plans, writes the point list whole or not at all, and reads it back.
 // Fails  cannotWrite  the file exists and force is not set, or writing or comparing failed.

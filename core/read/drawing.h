@@ -37,7 +37,15 @@ struct ReadOptions {
   std::size_t maxBytes = std::size_t{1} << 30;
 };
 
-// Reads by content and extension. `name` is for messages ("rib.dxf").
+// The bytes of a file, or of standard input for "-".
+// Fails  cannotRead  it can't be opened or read, is a folder, or is larger than maxBytes.
+Result<std::string> readBytes(const std::string& path, std::size_t maxBytes);
+
+// A drawing whose bytes are at hand; `path` gives the ending and the name for messages.
+Result<Drawing> readDrawingBytes(std::string_view bytes, const std::string& path, const ReadOptions& options,
+                                 RunControl& control);
+
+// Reads by content and ending.
 //
 // Fails  cannotRead  damaged or truncated input, with line or offset; too large.
 //        unsupported a format we don't read, with those we do.
