@@ -206,7 +206,7 @@ class Chainer {
         if (e == kNone || e == entry) break;
       }
       const std::size_t number = report_.contours.size() + 1;
-      contour.name = contour.layer.empty() ? "contour " + std::to_string(number)
+      contour.name = contour.layer.empty() || contour.layer == "0" ? "contour " + std::to_string(number)
                                            : contour.layer + " " + std::to_string(number);
       report_.contours.push_back(closeGaps(contour));
     }
