@@ -77,14 +77,21 @@ Result<std::vector<int>> contourNumbers(const std::string& list, int count) {
 
 Result<std::vector<pipeline::PreparedContour>> prepareChosen(const pipeline::OpenedDrawing& drawing,
                                                              const Request& request,
+                                                             const limits::Limits* limits,
                                                              const pipeline::PlanOptions& options,
                                                              RunControl& control) {
   auto numbers = contourNumbers(request.contours, static_cast<int>(drawing.contours.size()));
   if (!numbers) return numbers.error();
   std::vector<pipeline::PreparedContour> prepared;
   for (int number : *numbers) {
-    auto one = pipeline::prepareContour(drawing.contours[static_cast<std::size_t>(number - 1)], number,
-                                        options, control);
+    const contour::Contour& contour = drawing.contours[static_cast<std::size_t>(number - 1)];
+    if (limits != nullptr) {
+      auto driven = pipeline::prepareDriven(contour, number, *limits, options, control);
+      if (!driven) return Error{driven.error().code, drawing.name + ": " + driven.error().message};
+      for (pipeline::PreparedContour& one : *driven) prepared.push_back(std::move(one));
+      continue;
+    }
+    auto one = pipeline::prepareContour(contour, number, options, control);
     if (!one) return Error{one.error().code, drawing.name + ": " + one.error().message};
     prepared.push_back(std::move(*one));
   }

@@ -40,7 +40,7 @@ int inspectOne(const std::string& path, const Request& request, RunControl& cont
   auto drawing = pipeline::openDrawing(path, openOptions(request), control);
   if (!drawing) return fail(drawing.error());
   for (const std::string& warning : drawing->warnings) warn(request, drawing->name + ": " + warning);
-  auto prepared = prepareChosen(*drawing, request, {}, control);
+  auto prepared = prepareChosen(*drawing, request, nullptr, {}, control);
   if (!prepared) return fail(prepared.error());
   pipeline::SummaryInput input;
   input.drawing = &*drawing;

@@ -38,6 +38,14 @@ void printPrices(const std::vector<plan::Price>& prices) {
   fmt::print("{}\n", any ? "" : " nothing");
 }
 
+void printDrive(const pipeline::DriveReport& drive) {
+  if (drive.blended + drive.stopped == 0) return;
+  fmt::print("   joints: {} blended, at most {:.4f} mm off the wanted path, {} kept", drive.blended,
+             drive.largestDeviation, drive.stopped);
+  if (drive.crowded > 0) fmt::print("; {} have short neighbours that set their size", drive.crowded);
+  fmt::print("\n");
+}
+
 void print(const pipeline::OpenedDrawing& drawing, const std::vector<pipeline::PlannedContour>& plans) {
   double total = 0.0;
   for (const pipeline::PlannedContour& planned : plans) {
@@ -46,6 +54,7 @@ void print(const pipeline::OpenedDrawing& drawing, const std::vector<pipeline::P
     fmt::print("{}  {}  {:.3f} mm in {:.3f} s (no plan beats {:.3f} s), mean feed {:.0f} mm/min\n",
                planned.facts.number, planned.facts.name, planned.facts.length, p.time, p.lowerBound,
                planned.meanFeed * 60.0);
+    if (planned.drive) printDrive(*planned.drive);
     printShares(p);
     printPrices(planned.prices);
     if (planned.tightSpots.empty()) continue;
@@ -113,7 +122,7 @@ int planOne(const std::string& path, const Request& request, const limits::Limit
   if (!drawing) return fail(drawing.error());
   for (const std::string& warning : drawing->warnings) warn(request, drawing->name + ": " + warning);
   const pipeline::PlanOptions options = planOptions(request);
-  auto prepared = prepareChosen(*drawing, request, options, control);
+  auto prepared = prepareChosen(*drawing, request, &limits, options, control);
   if (!prepared) return fail(prepared.error());
   std::vector<pipeline::PlannedContour> plans;
   for (const pipeline::PreparedContour& one : *prepared) {

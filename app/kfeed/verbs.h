@@ -48,6 +48,7 @@ Result<std::vector<int>> contourNumbers(const std::string& list, int count);
 // Prepares the chosen contours of a drawing.
 Result<std::vector<pipeline::PreparedContour>> prepareChosen(const pipeline::OpenedDrawing& drawing,
                                                              const Request& request,
+                                                             const limits::Limits* limits,
                                                              const pipeline::PlanOptions& options,
                                                              RunControl& control);
 

@@ -70,6 +70,37 @@ Json factsJson(const ContourFacts& facts) {
           {"max_curvature_per_mm", facts.maxCurvature}};
 }
 
+std::string_view toText(construct::Treatment treatment) {
+  switch (treatment) {
+    case construct::Treatment::blended:
+      return "blended";
+    case construct::Treatment::stopped:
+      return "kept";
+    case construct::Treatment::smooth:
+      break;
+  }
+  return "smooth";
+}
+
+// What became of the wanted path; places are on the wanted path.
+Json driveJson(const DriveReport& drive) {
+  Json joints = Json::array();
+  for (const construct::JointReport& made : drive.joints) {
+    if (made.treatment == construct::Treatment::smooth) continue;
+    joints.push_back({{"s_mm", made.joint.s},
+                      {"x_mm", made.joint.point.x},
+                      {"y_mm", made.joint.point.y},
+                      {"treatment", toText(made.treatment)},
+                      {"deviation_mm", made.deviation},
+                      {"length_mm", made.length},
+                      {"short_neighbour", made.crowded}});
+  }
+  return {{"joints_blended", drive.blended},
+          {"joints_kept", drive.stopped},
+          {"largest_deviation_mm", drive.largestDeviation},
+          {"joints", std::move(joints)}};
+}
+
 Json plannedJson(const PlannedContour& planned) {
   Json row = factsJson(planned.facts);
   row["time_s"] = planned.plan.time;
@@ -90,6 +121,7 @@ Json plannedJson(const PlannedContour& planned) {
                       {"time_saved_s", price.timeSaved}});
   }
   row["sensitivity"] = std::move(prices);
+  if (planned.drive) row["driven"] = driveJson(*planned.drive);
   return row;
 }
 

@@ -2,6 +2,7 @@
 // files. mm, s.
 #pragma once
 
+#include <map>
 #include <memory>
 #include <optional>
 #include <string>
@@ -9,6 +10,7 @@
 
 #include "core/base/result.h"
 #include "core/base/run_control.h"
+#include "core/construct/blend.h"
 #include "core/contour/contour.h"
 #include "core/limits/limits.h"
 #include "core/path/path.h"
@@ -46,6 +48,7 @@ Result<OpenedDrawing> openDrawing(const std::string& path, const OpenOptions& op
 struct PlanOptions {
   std::optional<plan::Law> law;  // empty: jerk where a jerk limit is given, else acceleration
   plan::Joints joints = plan::Joints::blend;
+  std::map<int, std::vector<construct::JointChoice>> jointChoices;  // made by hand, by contour number
   std::size_t targetNodes = 2000;
 };
 
@@ -73,9 +76,18 @@ struct ContourFacts {
   std::vector<contour::Joint> joints;  // tangent breaks and curvature steps only
 };
 
+// What became of the drawing's contour on its way to the driven path.
+struct DriveReport {
+  std::shared_ptr<const contour::Contour> wanted;  // the path that was asked for, before blending
+  std::vector<construct::JointReport> joints;      // places on `wanted`; empty where joints are kept exactly
+  double largestDeviation = 0.0;                   // mm, proved bound, driven against wanted
+  std::size_t blended = 0, stopped = 0, crowded = 0;
+};
+
 struct PlannedContour {
   ContourFacts facts;
   std::shared_ptr<const path::Path> path;
+  std::shared_ptr<const DriveReport> drive;  // null when the drawing's contour is driven as it is
   plan::Plan plan;
   double meanFeed = 0.0;              // mm/s
   std::vector<TightSpot> tightSpots;  // worst first, by time lost
@@ -84,11 +96,18 @@ struct PlannedContour {
 
 // Path and facts of one contour; independent of limits, so that a limit change can reuse it.
 struct PreparedContour {
-  ContourFacts facts;
+  ContourFacts facts;  // of the driven path
   std::shared_ptr<const path::Path> path;
+  std::shared_ptr<const DriveReport> drive;  // null when the drawing's contour is driven as it is
 };
 Result<PreparedContour> prepareContour(const contour::Contour& contour, int number,
                                        const PlanOptions& options, RunControl& control);
+
+// The paths that are driven for one contour of the drawing under these limits: joints blended within the path
+// tolerance unless options.joints says exact or there is no tolerance.
+Result<std::vector<PreparedContour>> prepareDriven(const contour::Contour& contour, int number,
+                                                   const limits::Limits& limits, const PlanOptions& options,
+                                                   RunControl& control);
 
 // Geometric tight spots (local curvature maxima and tangent breaks, tightest first) for inspect.
 std::vector<TightSpot> geometricTightSpots(const path::Path& path);

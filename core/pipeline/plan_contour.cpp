@@ -143,6 +143,7 @@ Result<PlannedContour> planContour(const PreparedContour& prepared, const limits
   PlannedContour planned;
   planned.facts = prepared.facts;
   planned.path = prepared.path;
+  planned.drive = prepared.drive;
   planned.plan = std::move(*plan);
   planned.meanFeed = prepared.facts.length / planned.plan.time;
   planned.tightSpots = spotsOf(*prepared.path, planned.plan, *limits.feed);
