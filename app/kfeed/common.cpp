@@ -18,6 +18,8 @@ int exitCodeFor(ErrorCode code) {
     case ErrorCode::cannotRead:
     case ErrorCode::unsupported:
     case ErrorCode::notConverged:
+    case ErrorCode::needsUnit:
+    case ErrorCode::needsConsent:
       return kUnreadable;
     case ErrorCode::cannotWrite:
       return kUnwritable;

@@ -15,6 +15,8 @@ enum class ErrorCode {
   notConverged,     // an iteration ran out of its budget
   cannotRead,       // an input is missing, damaged or not understood
   unsupported,      // an input is understood but holds something that can't be used
+  needsUnit,        // a drawing does not say its unit, and nobody gave one
+  needsConsent,     // entities of a drawing can't be used, and nobody allowed going on without
   cannotWrite,      // an output could not be written whole
   infeasible,       // no motion exists under these limits
   auditFailed,      // a written file did not pass its independent check

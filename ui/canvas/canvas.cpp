@@ -1,0 +1,181 @@
+// The drawing on screen: view, mouse and keyboard.
+// mm in the drawing, pixels on screen; y points up.
+#include "ui/canvas/canvas.h"
+
+#include <QKeyEvent>
+#include <QMouseEvent>
+#include <QPainter>
+#include <QWheelEvent>
+#include <algorithm>
+#include <cmath>
+
+namespace kf::ui {
+namespace {
+
+constexpr double kMargin = 46.0;  // px around a fitted drawing
+constexpr double kReach = 28.0;   // px within which the path is pointed at
+constexpr double kLeastScale = 1e-6, kMostScale = 1e6;
+
+}  // namespace
+
+Canvas::Canvas(Document& document, QWidget* parent) : QWidget(parent), document_(document) {
+  setMouseTracking(true);
+  setFocusPolicy(Qt::StrongFocus);
+  setMinimumSize(260, 180);
+  setAccessibleName(tr("Drawing"));
+  setToolTip({});
+  connect(&document_, &Document::opened, this, &Canvas::fit);
+  for (auto signal : {&Document::plansChanged, &Document::chosenChanged, &Document::unitsChanged,
+                      &Document::colouringChanged}) {
+    connect(&document_, signal, this, &Canvas::refresh);
+  }
+  connect(&document_, &Document::cursorChanged, this, qOverload<>(&QWidget::update));
+  connect(&document_, &Document::placeShown, this, &Canvas::showPlace);
+}
+
+void Canvas::refresh() {
+  stale_ = true;
+  update();
+}
+
+void Canvas::fit() {
+  fitted_ = true;
+  if (!document_.isEmpty()) {
+    const curve::Box& box = document_.drawing()->bounds;
+    const double w = std::max(box.width(), 1e-6), h = std::max(box.height(), 1e-6);
+    scale_ = std::clamp(std::min((width() - 2 * kMargin) / w, (height() - 2 * kMargin) / h), kLeastScale,
+                        kMostScale);
+    centre_ = {0.5 * (box.low.x + box.high.x), 0.5 * (box.low.y + box.high.y)};
+  }
+  refresh();
+}
+
+QPointF Canvas::toScreen(double x, double y) const {
+  return {0.5 * width() + (x - centre_.x()) * scale_, 0.5 * height() - (y - centre_.y()) * scale_};
+}
+
+void Canvas::zoomBy(double factor, QPointF at) {
+  const double next = std::clamp(scale_ * factor, kLeastScale, kMostScale);
+  const QPointF offset(at.x() - 0.5 * width(), 0.5 * height() - at.y());
+  centre_ += offset / scale_ - offset / next;
+  scale_ = next;
+  fitted_ = false;
+  refresh();
+}
+
+void Canvas::showPlace(double s, double halfWidth) {
+  const auto* prepared = document_.preparedAt(document_.chosen());
+  if (prepared == nullptr) return;
+  const path::Sample p = prepared->path->sample(s);
+  centre_ = {p.x, p.y};
+  const double wanted = 0.25 * std::min(width(), height()) / std::max(halfWidth, 1e-3);
+  // Come closer when the stretch would be small; never jump out of a closer view.
+  scale_ = std::clamp(std::max(scale_, wanted), kLeastScale, kMostScale);
+  fitted_ = false;
+  refresh();
+}
+
+void Canvas::resizeEvent(QResizeEvent* /*event*/) {
+  if (fitted_) fit();
+  refresh();
+}
+
+void Canvas::wheelEvent(QWheelEvent* event) {
+  zoomBy(std::pow(1.0015, event->angleDelta().y()), event->position());
+  event->accept();
+}
+
+void Canvas::mousePressEvent(QMouseEvent* event) {
+  if (event->button() != Qt::LeftButton && event->button() != Qt::MiddleButton) return;
+  dragging_ = true;
+  moved_ = false;
+  lastMouse_ = event->position();
+}
+
+void Canvas::mouseMoveEvent(QMouseEvent* event) {
+  if (dragging_) {
+    const QPointF by = event->position() - lastMouse_;
+    if (!moved_ && by.manhattanLength() < 4) return;
+    moved_ = true;
+    setCursor(Qt::ClosedHandCursor);
+    centre_ += QPointF(-by.x(), by.y()) / scale_;
+    lastMouse_ = event->position();
+    fitted_ = false;
+    refresh();
+    return;
+  }
+  const Near near = nearestOn(document_.chosen(), event->position());
+  if (near.pixels <= kReach) document_.setCursor(near.s);
+}
+
+void Canvas::mouseReleaseEvent(QMouseEvent* event) {
+  dragging_ = false;
+  unsetCursor();
+  if (moved_ || event->button() != Qt::LeftButton) return;
+  Near best;
+  for (int i = 0; i < document_.contourCount(); ++i) {
+    const Near near = nearestOn(i, event->position());
+    if (near.pixels < best.pixels) best = near;
+  }
+  if (best.pixels > kReach) return;
+  document_.choose(best.contour);
+  document_.setCursor(best.s);
+}
+
+void Canvas::mouseDoubleClickEvent(QMouseEvent* /*event*/) {
+  fit();
+}
+
+void Canvas::leaveEvent(QEvent* /*event*/) {}
+
+void Canvas::keyPressEvent(QKeyEvent* event) {
+  const auto* prepared = document_.preparedAt(document_.chosen());
+  const double length = prepared == nullptr ? 0.0 : prepared->path->length;
+  const double step = length / (event->modifiers() & Qt::ShiftModifier ? 50.0 : 500.0);
+  const QPointF middle(0.5 * width(), 0.5 * height());
+  switch (event->key()) {
+    case Qt::Key_Home:
+      fit();
+      break;
+    case Qt::Key_Plus:
+    case Qt::Key_Equal:
+      zoomBy(1.25, middle);
+      break;
+    case Qt::Key_Minus:
+      zoomBy(0.8, middle);
+      break;
+    case Qt::Key_Right:
+      document_.setCursor(document_.cursor().value_or(0.0) + step);
+      break;
+    case Qt::Key_Left:
+      document_.setCursor(document_.cursor().value_or(length) - step);
+      break;
+    default:
+      QWidget::keyPressEvent(event);
+  }
+}
+
+Canvas::Near Canvas::nearestOn(int index, QPointF at) const {
+  Near near;
+  near.contour = index;
+  const auto* prepared = document_.preparedAt(index);
+  if (prepared == nullptr) return near;
+  const path::Path& path = *prepared->path;
+  double best = 1e300;
+  const double mx = centre_.x() + (at.x() - 0.5 * width()) / scale_,
+               my = centre_.y() - (at.y() - 0.5 * height()) / scale_;
+  for (std::size_t i = 0; i + 1 < path.size(); ++i) {
+    const double dx = path.x[i + 1] - path.x[i], dy = path.y[i + 1] - path.y[i], n = dx * dx + dy * dy;
+    const double part =
+        n > 0.0 ? std::clamp(((mx - path.x[i]) * dx + (my - path.y[i]) * dy) / n, 0.0, 1.0) : 0.0;
+    const double ex = path.x[i] + part * dx - mx, ey = path.y[i] + part * dy - my;
+    if (ex * ex + ey * ey < best) {
+      best = ex * ex + ey * ey;
+      near.s = path.s[i] + part * (path.s[i + 1] - path.s[i]);
+    }
+  }
+  near.pixels = std::sqrt(best) * scale_;
+  return near;
+}
+
+}  // namespace kf::ui

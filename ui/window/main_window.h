@@ -1,0 +1,87 @@
+// The one window: canvas and plot, limits, tables, and the actions that join them.
+// Units as shown.
+#pragma once
+
+#include <QElapsedTimer>
+#include <QMainWindow>
+#include <QTimer>
+
+#include "ui/models/document.h"
+#include "ui/settings/settings.h"
+
+class QActionGroup;
+class QComboBox;
+class QLabel;
+class QToolBar;
+
+namespace kf::ui {
+
+class Canvas;
+class ContourTable;
+class CursorReadout;
+class LimitsPanel;
+class PlotPane;
+class SpotTable;
+class SummaryPanel;
+class TimeStrip;
+
+class MainWindow : public QMainWindow {
+  Q_OBJECT
+
+ public:
+  MainWindow(Document& document, Settings& settings, QWidget* parent = nullptr);
+  ~MainWindow() override;
+
+  void openDrawing(const QString& path);
+  Canvas& canvas() { return *canvas_; }
+  PlotPane& plot() { return *plot_; }
+  SpotTable& spots() { return *spots_; }
+  CursorReadout& readout() { return *readout_; }
+
+ signals:
+  // After a point list was written, with its path.
+  void pointsExported(const QString& path);
+
+ protected:
+  void dragEnterEvent(QDragEnterEvent* event) override;
+  void dropEvent(QDropEvent* event) override;
+  void closeEvent(QCloseEvent* event) override;
+
+ private:
+  void makeActions();
+  void makeMenus();
+  void makeLayout();
+  void connectDocument();
+  void refreshTitle();
+  void refreshActions();
+  void chooseDrawing();
+  void chooseLimits();
+  void saveLimits();
+  void exportPoints();
+  void exportPicture(bool plot);
+  void copySpots();
+  void togglePlay(bool play);
+  void advancePlay();
+  void showError(const QString& message);
+  void showImport();
+
+  Document& document_;
+  Settings& settings_;
+  Canvas* canvas_ = nullptr;
+  PlotPane* plot_ = nullptr;
+  LimitsPanel* limits_ = nullptr;
+  ContourTable* contours_ = nullptr;
+  SpotTable* spots_ = nullptr;
+  TimeStrip* strip_ = nullptr;
+  SummaryPanel* summary_ = nullptr;
+  CursorReadout* readout_ = nullptr;
+  QLabel* import_ = nullptr;
+  QComboBox *colouring_ = nullptr, *rate_ = nullptr;
+  struct Actions;
+  std::unique_ptr<Actions> act_;
+  QTimer playTimer_;
+  QElapsedTimer playClock_;
+  double playFrom_ = 0.0;
+};
+
+}  // namespace kf::ui
