@@ -12,8 +12,9 @@
 namespace kf::ui {
 namespace {
 
-constexpr double kMargin = 46.0;  // px around a fitted drawing
-constexpr double kReach = 28.0;   // px within which the path is pointed at
+constexpr double kMargin = 46.0;      // px around a fitted drawing
+constexpr double kLegendRoom = 34.0;  // px more at the top
+constexpr double kReach = 28.0;       // px within which the path is pointed at
 constexpr double kLeastScale = 1e-6, kMostScale = 1e6;
 
 }  // namespace
@@ -43,9 +44,10 @@ void Canvas::fit() {
   if (!document_.isEmpty()) {
     const curve::Box& box = document_.drawing()->bounds;
     const double w = std::max(box.width(), 1e-6), h = std::max(box.height(), 1e-6);
-    scale_ = std::clamp(std::min((width() - 2 * kMargin) / w, (height() - 2 * kMargin) / h), kLeastScale,
-                        kMostScale);
-    centre_ = {0.5 * (box.low.x + box.high.x), 0.5 * (box.low.y + box.high.y)};
+    scale_ = std::clamp(std::min((width() - 2 * kMargin) / w, (height() - 2 * kMargin - kLegendRoom) / h),
+                        kLeastScale, kMostScale);
+    centre_ =
+        QPointF(0.5 * (box.low.x + box.high.x), 0.5 * (box.low.y + box.high.y) + 0.5 * kLegendRoom / scale_);
   }
   refresh();
 }

@@ -41,6 +41,27 @@ Result<Document::Plans> planAll(const std::vector<pipeline::PreparedContour>& pr
   return plans;
 }
 
+// Many contours share the nodes, so that a large drawing stays live.
+Result<std::vector<pipeline::PreparedContour>> prepareAll(const pipeline::OpenedDrawing& drawing,
+                                                          const limits::Limits& limits, RunControl& control) {
+  pipeline::PlanOptions planning;
+  planning.targetNodes =
+      std::max<std::size_t>(100, std::min<std::size_t>(2000, kNodesAtOnce / drawing.contours.size()));
+  std::vector<pipeline::PreparedContour> all;
+  int number = 0;
+  for (const contour::Contour& contour : drawing.contours) {
+    auto driven = pipeline::prepareDriven(contour, ++number, limits, planning, control);
+    if (!driven) return driven.error();
+    for (pipeline::PreparedContour& one : *driven) all.push_back(std::move(one));
+  }
+  return all;
+}
+
+// Whether the driven path is another one under the other limits.
+bool drivesAlike(const limits::Limits& a, const limits::Limits& b) {
+  return a.pathTolerance == b.pathTolerance && a.toolDiameter == b.toolDiameter && a.side == b.side;
+}
+
 Result<std::vector<plan::Price>> priceAll(const std::vector<pipeline::PreparedContour>& prepared,
                                           const limits::Limits& limits, RunControl& control) {
   std::map<LimitName, double> saved;
@@ -65,21 +86,15 @@ void Document::open(const QString& path, const pipeline::OpenOptions& options) {
   emit opening(path);
   const std::string file = path.toStdString();
   opener_.start(
-      [file, options](RunControl& control) -> Result<Opening> {
+      [file, options, limits = limits_](RunControl& control) -> Result<Opening> {
         auto drawing = pipeline::openDrawing(file, options, control);
         if (!drawing) return drawing.error();
         Opening result;
         result.drawing = std::make_shared<const pipeline::OpenedDrawing>(std::move(*drawing));
-        // Many contours share the nodes, so that a large drawing stays live.
-        pipeline::PlanOptions planning;
-        planning.targetNodes =
-            std::max<std::size_t>(100, std::min<std::size_t>(2000, 40'000 / result.drawing->contours.size()));
-        int number = 0;
-        for (const contour::Contour& contour : result.drawing->contours) {
-          auto prepared = pipeline::prepareContour(contour, ++number, planning, control);
-          if (!prepared) return prepared.error();
-          result.prepared.push_back(std::move(*prepared));
-        }
+        auto prepared = prepareAll(*result.drawing, limits, control);
+        if (!prepared) return prepared.error();
+        result.prepared = std::move(*prepared);
+        result.preparedFor = limits;
         return result;
       },
       [this, path, options](Result<Opening> result) { takeOpened(path, options, std::move(result)); });
@@ -105,6 +120,7 @@ void Document::takeOpened(const QString& path, const pipeline::OpenOptions& opti
   }
   drawing_ = result->drawing;
   prepared_ = std::move(result->prepared);
+  preparedFor_ = result->preparedFor;
   chosen_ = 0;
   cursor_.reset();
   reference_.clear();
@@ -194,10 +210,16 @@ double Document::totalLowerBound() const {
 }
 
 void Document::replan() {
+  preparer_.cancel();
+  planner_.cancel();
   pricer_.cancel();
   prices_.clear();
   if (prepared_.empty()) {
     emit pricesChanged();
+    return;
+  }
+  if (!drivesAlike(limits_, preparedFor_)) {
+    prepareAgain();
     return;
   }
   std::size_t nodes = 0;
@@ -210,6 +232,23 @@ void Document::replan() {
                     limits = limits_](RunControl& control) { return planAll(prepared, limits, control); },
                    [this](Result<Plans> plans) { takePlans(std::move(plans)); });
   }
+}
+
+// Another tolerance or tool: the path itself changes, which takes longer than a plan does.
+void Document::prepareAgain() {
+  preparer_.start([drawing = drawing_,
+                   limits = limits_](RunControl& control) { return prepareAll(*drawing, limits, control); },
+                  [this, limits = limits_](Result<std::vector<pipeline::PreparedContour>> prepared) {
+                    preparedFor_ = limits;
+                    if (!prepared) {
+                      takePlans(prepared.error());
+                      return;
+                    }
+                    prepared_ = std::move(*prepared);
+                    plans_.assign(prepared_.size(), nullptr);
+                    chosen_ = std::min(chosen_, std::max(0, contourCount() - 1));
+                    replan();
+                  });
 }
 
 void Document::takePlans(Result<Plans> plans) {

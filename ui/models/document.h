@@ -102,16 +102,19 @@ class Document : public QObject {
   struct Opening {
     DrawingPtr drawing;
     std::vector<pipeline::PreparedContour> prepared;
+    limits::Limits preparedFor;
   };
 
   void takeOpened(const QString& path, const pipeline::OpenOptions& options, Result<Opening> result);
   void applyLimits(const limits::Limits& limits);
   void replan();
+  void prepareAgain();
   void takePlans(Result<Plans> plans);
   void startPrices();
 
   DrawingPtr drawing_;
   std::vector<pipeline::PreparedContour> prepared_;
+  limits::Limits preparedFor_;  // the limits that prepared_ was made for
   limits::Limits limits_;
   QString limitsPath_;
   Plans plans_, reference_;
@@ -123,6 +126,7 @@ class Document : public QObject {
   Colouring colouring_ = Colouring::speed;
   QUndoStack undo_;
   Runner<Opening> opener_;
+  Runner<std::vector<pipeline::PreparedContour>> preparer_;
   Runner<Plans> planner_;
   Runner<std::vector<plan::Price>> pricer_;
 };

@@ -108,9 +108,14 @@ void LimitsPanel::addRow(QGridLayout& grid, int line, const limits::Field& field
   Row row;
   row.field = &field;
   QWidget* parent = grid.parentWidget();
-  row.on = new QCheckBox(qt(field.label), parent);
-  row.on->setObjectName(qt(field.name) + QStringLiteral(".on"));
-  row.on->setToolTip(isRequired(field) ? tr("A plan needs this limit") : tr("Off: no limit"));
+  if (isRequired(field)) {
+    row.label = new QLabel(qt(field.label), parent);
+    row.label->setToolTip(tr("A plan needs this limit"));
+  } else {
+    row.on = new QCheckBox(qt(field.label), parent);
+    row.on->setObjectName(qt(field.name) + QStringLiteral(".on"));
+    row.on->setToolTip(tr("Off: no limit"));
+  }
   row.number = new QDoubleSpinBox(parent);
   row.number->setObjectName(qt(field.name));
   row.number->setAccessibleName(qt(field.label));
@@ -129,16 +134,18 @@ void LimitsPanel::addRow(QGridLayout& grid, int line, const limits::Field& field
   row.unit = new QLabel(parent);
   row.unit->setMinimumWidth(52);
   row.remembered = startValue(field);
-  grid.addWidget(row.on, line, 0);
+  grid.addWidget(row.on != nullptr ? static_cast<QWidget*>(row.on) : row.label, line, 0);
+  if (row.label != nullptr) row.label->setBuddy(row.number);
   grid.addWidget(row.number, line, 1);
   grid.addWidget(row.slider, line, 2);
   grid.addWidget(row.unit, line, 3);
   rows_.push_back(row);
-  connect(row.on, &QCheckBox::toggled, this, [this, index](bool on) {
-    if (refreshing_) return;
-    Row& r = rows_[index];
-    document_.setField(*r.field, on ? std::optional<double>(r.remembered) : std::nullopt);
-  });
+  if (row.on != nullptr)
+    connect(row.on, &QCheckBox::toggled, this, [this, index](bool on) {
+      if (refreshing_) return;
+      Row& r = rows_[index];
+      document_.setField(*r.field, on ? std::optional<double>(r.remembered) : std::nullopt);
+    });
   connect(row.number, &QDoubleSpinBox::valueChanged, this, [this, index](double shown) {
     if (refreshing_) return;
     change(index, shown / shownFactor(qt(rows_[index].field->unit), document_.units()));
@@ -172,10 +179,9 @@ void LimitsPanel::refresh() {
     const std::optional<double> value = row.field->get(limits);
     const double factor = shownFactor(qt(row.field->unit), document_.units());
     if (value) row.remembered = *value;
-    row.on->setChecked(value.has_value());
-    row.on->setEnabled(!(isRequired(*row.field) && value));
-    row.number->setEnabled(value.has_value());
-    row.slider->setEnabled(value.has_value());
+    if (row.on != nullptr) row.on->setChecked(value.has_value());
+    row.number->setEnabled(row.on == nullptr || value);
+    row.slider->setEnabled(row.on == nullptr || value);
     const double shown = row.remembered * factor;
     row.number->setDecimals(row.field->integer ? 0
                             : shown >= 100.0   ? (factor == 1.0 ? 0 : 1)

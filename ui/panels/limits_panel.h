@@ -25,7 +25,8 @@ class LimitsPanel : public QWidget {
  private:
   struct Row {
     const limits::Field* field = nullptr;
-    QCheckBox* on = nullptr;
+    QCheckBox* on = nullptr;  // null: a plan needs this limit
+    QLabel* label = nullptr;
     QDoubleSpinBox* number = nullptr;
     QSlider* slider = nullptr;
     QLabel* unit = nullptr;

@@ -55,7 +55,7 @@ void ContourTable::refresh() {
   for (int i = 0; i < document_.contourCount(); ++i) {
     const auto* prepared = document_.preparedAt(i);
     const auto* planned = document_.planAt(i);
-    setItem(i, 0, cell(QString::number(i + 1), true));
+    setItem(i, 0, cell(QString::number(prepared->facts.number), true));
     setItem(i, 1, cell(QString::fromStdString(prepared->facts.name), false));
     setItem(i, 2, cell(prepared->facts.closed ? tr("closed") : tr("open"), false));
     setItem(i, 3, cell(lengthNumber(prepared->facts.length, document_.units()), true));

@@ -70,7 +70,7 @@ void TimeStrip::paintEvent(QPaintEvent* /*event*/) {
   }
   const int line = fontMetrics().height() + 1;
   int column = 0, row = 0;
-  const int columns = std::max(1, width() / 300), columnWidth = width() / columns;
+  const int columns = std::max(1, width() / 430), columnWidth = width() / columns;
   for (const Share& share : list) {
     if (row >= 3) break;
     const int left = column * columnWidth, top = kBar + kGap + row * line;

@@ -33,8 +33,10 @@ struct PlotPane::Parts {
   QCustomPlot* plot = nullptr;
   QCPAxisRect *bendRect = nullptr, *speedRect = nullptr;
   QCPGraph *bend = nullptr, *allowed = nullptr, *planned = nullptr, *reference = nullptr;
+  QCPLegend* speedLegend = nullptr;
   QCPItemStraightLine *bendLine = nullptr, *speedLine = nullptr;
   bool time = false, busy = false;
+  bool whole = true;  // the view follows the whole path until the user zooms or pans
   // The full data, in shown units.
   std::vector<double> x, k, cap, v, referenceX, referenceV;
 };
@@ -54,7 +56,7 @@ PlotPane::PlotPane(Document& document, QWidget* parent)
   parts_->speedRect = new QCPAxisRect(plot);
   plot->plotLayout()->addElement(0, 0, parts_->bendRect);
   plot->plotLayout()->addElement(1, 0, parts_->speedRect);
-  plot->plotLayout()->setRowStretchFactors({0.7, 1.0});
+  plot->plotLayout()->setRowStretchFactors({0.75, 1.0});
   plot->plotLayout()->setRowSpacing(0);
   auto* margins = new QCPMarginGroup(plot);
   for (QCPAxisRect* rect : {parts_->bendRect, parts_->speedRect}) {
@@ -95,6 +97,7 @@ PlotPane::PlotPane(Document& document, QWidget* parent)
     legend->setBrush(QColor(255, 255, 255, 200));
     legend->setMargins({6, 2, 6, 2});
     for (QCPGraph* g : rect->graphs()) g->addToLegend(legend);
+    if (rect == parts_->speedRect) parts_->speedLegend = legend;
   }
   plot->setInteractions(QCP::iRangeDrag | QCP::iRangeZoom);
   QCPAxis *bendX = parts_->bendRect->axis(QCPAxis::atBottom),
@@ -102,6 +105,7 @@ PlotPane::PlotPane(Document& document, QWidget* parent)
   const auto follow = [this](QCPAxis* other) {
     return [this, other](const QCPRange& range) {
       if (parts_->busy) return;
+      parts_->whole = false;
       parts_->busy = true;
       other->setRange(range);
       parts_->busy = false;
@@ -163,8 +167,8 @@ void PlotPane::labelAxes() {
   const Units units = document_.units();
   parts_->speedRect->axis(QCPAxis::atBottom)
       ->setLabel(parts_->time ? tr("time, s") : tr("path length, %1").arg(lengthUnit(units)));
-  parts_->speedRect->axis(QCPAxis::atLeft)->setLabel(tr("speed, %1").arg(feedUnit(units)));
-  parts_->bendRect->axis(QCPAxis::atLeft)->setLabel(tr("curvature, 1/%1").arg(lengthUnit(units)));
+  parts_->speedRect->axis(QCPAxis::atLeft)->setLabel(feedUnit(units));
+  parts_->bendRect->axis(QCPAxis::atLeft)->setLabel(QStringLiteral("1/%1").arg(lengthUnit(units)));
 }
 
 void PlotPane::rebuild() {
@@ -173,7 +177,6 @@ void PlotPane::rebuild() {
   for (auto* list : {&p.x, &p.k, &p.cap, &p.v, &p.referenceX, &p.referenceV}) list->clear();
   const auto* planned = document_.plan();
   const Units units = document_.units();
-  const double wasLow = rangeLow(), wasHigh = rangeHigh();
   if (planned != nullptr) {
     const path::Path& path = *planned->path;
     const double feed = document_.limits().feed.value_or(1.0);
@@ -193,19 +196,20 @@ void PlotPane::rebuild() {
         p.referenceV.push_back(fromMm(60.0 * std::sqrt(old.q()[i]), units));
       }
     }
-    const auto [low, high] = std::minmax_element(p.k.begin(), p.k.end());
-    const double span = std::max({*high, 0.0}) - std::min(*low, 0.0);
-    const double room = span > 1e-12 ? 0.12 * span : 1.0;
-    p.bendRect->axis(QCPAxis::atLeft)
-        ->setRange(std::min(*low, 0.0) - room, std::max(*high, 0.0) + 2.5 * room);
+    fitBendAxis();
     double top = fromMm(60.0 * feed, units);
     if (!p.referenceV.empty())
       top = std::max(top, *std::max_element(p.referenceV.begin(), p.referenceV.end()));
     p.speedRect->axis(QCPAxis::atLeft)->setRange(0.0, 1.28 * top);
   }
   p.reference->setVisible(!p.referenceX.empty());
-  // A change of limits keeps the view; a time axis follows its own end.
-  if (p.x.empty() || wasHigh > p.x.back() * 1.001 || wasLow < 0.0 || p.time) {
+  if (p.reference->visible()) {
+    p.reference->addToLegend(p.speedLegend);
+  } else {
+    p.reference->removeFromLegend(p.speedLegend);
+  }
+  // A change of limits keeps the view that the user chose.
+  if (p.whole || p.x.empty()) {
     showWhole();
   } else {
     decimate();
@@ -213,9 +217,33 @@ void PlotPane::rebuild() {
   }
 }
 
+// Small blends bend a thousand times more than the drawing does. The axis shows what nearly all of the length
+// needs; peaks that would flatten all else are cut, and the key says so.
+void PlotPane::fitBendAxis() {
+  Parts& p = *parts_;
+  const path::Path& path = *document_.plan()->path;
+  std::vector<std::pair<double, double>> weights;  // |k|, length
+  for (std::size_t i = 0; i + 1 < path.size(); ++i) {
+    weights.emplace_back(std::max(std::abs(p.k[i]), std::abs(p.k[i + 1])), path.s[i + 1] - path.s[i]);
+  }
+  std::sort(weights.begin(), weights.end());
+  double length = 0.0;
+  auto usual = weights.begin();
+  while (usual + 1 != weights.end() && (length += usual->second) < 0.99 * path.length) ++usual;
+  const double largest = weights.back().first;
+  const bool cut = largest > 8.0 * usual->first && usual->first > 0.0;
+  const double reach = cut ? 2.0 * usual->first : largest;
+  const auto [low, high] = std::minmax_element(p.k.begin(), p.k.end());
+  const double from = std::max(std::min(*low, 0.0), -reach), to = std::min(std::max(*high, 0.0), reach);
+  const double room = to > from ? 0.12 * (to - from) : 1.0;
+  p.bendRect->axis(QCPAxis::atLeft)->setRange(from - room, to + 2.5 * room);
+  p.bend->setName(cut ? tr("curvature, left turn up; peaks cut") : tr("curvature, left turn up"));
+}
+
 void PlotPane::showWhole() {
   const double end = parts_->x.empty() ? 1.0 : parts_->x.back();
   parts_->speedRect->axis(QCPAxis::atBottom)->setRange(0.0, end > 0.0 ? end : 1.0);
+  parts_->whole = true;
   decimate();
   placeCursor();
 }

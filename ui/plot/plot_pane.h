@@ -36,6 +36,7 @@ class PlotPane : public QWidget {
   void placeCursor();
   void showPlace(double s, double halfWidth);
   void labelAxes();
+  void fitBendAxis();
 
   Document& document_;
   std::unique_ptr<Parts> parts_;

@@ -67,8 +67,9 @@ void MainWindow::makeLayout() {
   auto* left = new QSplitter(Qt::Vertical, this);
   left->addWidget(canvas_);
   left->addWidget(plot_);
-  left->setStretchFactor(0, 5);
-  left->setStretchFactor(1, 4);
+  left->setSizes({460, 310});
+  left->setStretchFactor(0, 3);
+  left->setStretchFactor(1, 2);
   auto* leftBox = new QWidget(this);
   auto* leftLayout = new QVBoxLayout(leftBox);
   leftLayout->setContentsMargins(0, 0, 0, 0);
@@ -110,7 +111,7 @@ void MainWindow::makeLayout() {
   all->addWidget(leftBox);
   all->addWidget(rightBox);
   all->setStretchFactor(0, 1);
-  all->setSizes({950, 450});
+  all->setSizes({920, 480});
   all->setChildrenCollapsible(false);
   setCentralWidget(all);
   statusBar();
