@@ -69,7 +69,7 @@ Result<OpenedDrawing> openDrawing(const std::string& path, const OpenOptions& op
   opened.skipped = std::move(drawing->skipped);
   opened.ignored = std::move(drawing->ignored);
   if (!opened.skipped.empty() && !options.allowSkipped) {
-    return Error{ErrorCode::unsupported,
+    return Error{ErrorCode::needsConsent,
                  fmt::format("{}: {} can't be used: {}; go on without with --allow-skipped, or redraw them",
                              opened.name, plural(countOf(opened.skipped), "entity", "entities"),
                              read::describe(opened.skipped))};
@@ -80,7 +80,7 @@ Result<OpenedDrawing> openDrawing(const std::string& path, const OpenOptions& op
                              opened.ignored.empty() ? std::string() : ": " + read::describe(opened.ignored))};
   }
   if (!drawing->millimetresPerUnit && !options.millimetresPerUnit) {
-    return Error{ErrorCode::unsupported,
+    return Error{ErrorCode::needsUnit,
                  opened.name + " does not say its unit; give it with --units mm or --units in"};
   }
   const double scale =
