@@ -24,7 +24,8 @@ std::size_t countOf(const std::vector<read::Skipped>& list) {
   return n;
 }
 
-void warnOf(OpenedDrawing& opened, const contour::ChainReport& chained) {
+void warnOf(OpenedDrawing& opened, const contour::ChainReport& chained,
+            const std::vector<std::string>& fromReader) {
   if (!opened.skipped.empty()) {
     opened.warnings.push_back(fmt::format("left out {}: {}",
                                           plural(countOf(opened.skipped), "entity", "entities"),
@@ -32,6 +33,7 @@ void warnOf(OpenedDrawing& opened, const contour::ChainReport& chained) {
   }
   if (!opened.ignored.empty())
     opened.warnings.push_back("passed over, as no contour: " + read::describe(opened.ignored));
+  opened.warnings.insert(opened.warnings.end(), fromReader.begin(), fromReader.end());
   if (chained.zeroLengthDropped > 0) {
     opened.warnings.push_back("left out " + plural(chained.zeroLengthDropped, "entity", "entities") +
                               " without length");
@@ -98,7 +100,7 @@ Result<OpenedDrawing> openDrawing(const std::string& path, const OpenOptions& op
   for (const contour::Contour& c : opened.contours) opened.bounds.include(contour::bounds(c));
   if (opened.contours.empty())
     return Error{ErrorCode::unsupported, opened.name + " holds only entities without length"};
-  warnOf(opened, *chained);
+  warnOf(opened, *chained, drawing->warnings);
   control.report(1.0);
   return opened;
 }

@@ -30,13 +30,23 @@ bool looksLikeDxf(std::string_view bytes) {
   return (head == "0" || head == "999") && bytes.substr(0, 65536).find("SECTION") != std::string_view::npos;
 }
 
+// XML whose first element is <svg>, perhaps with a prefix.
+bool looksLikeSvg(std::string_view bytes) {
+  if (bytes.substr(0, 3) == "\xEF\xBB\xBF") bytes.remove_prefix(3);
+  const std::size_t first = bytes.find_first_not_of(" \t\r\n");
+  if (first == std::string_view::npos || bytes[first] != '<') return false;
+  const std::string_view head = bytes.substr(first, 65536);
+  return head.find("<svg") != std::string_view::npos || head.find(":svg") != std::string_view::npos;
+}
+
 bool looksLikeRows(std::string_view bytes) {
   return bytes.substr(0, 4096).find('\0') == std::string_view::npos;
 }
 
 // Content decides first, in this order; the ending decides between texts that look alike.
-constexpr std::array<Format, 2> kFormats = {{
+constexpr std::array<Format, 3> kFormats = {{
     {"DXF", ".dxf", looksLikeDxf, readDxf},
+    {"SVG", ".svg", looksLikeSvg, readSvg},
     {"CSV", ".csv", looksLikeRows, readCsvPoints},
 }};
 
@@ -44,6 +54,7 @@ std::string lowerEnding(const std::string& path) {
   std::string ending = std::filesystem::path(path).extension().string();
   std::transform(ending.begin(), ending.end(), ending.begin(),
                  [](unsigned char c) { return static_cast<char>(c >= 'A' && c <= 'Z' ? c + 32 : c); });
+  if (ending == ".svgz") return ".svg";
   return ending == ".txt" || ending == ".xy" ? ".csv" : ending;
 }
 
@@ -87,8 +98,9 @@ Result<Drawing> readDrawingBytes(std::string_view bytes, const std::string& path
     if (format.matches(bytes) && (path == "-" || ending.empty() || format.read != readCsvPoints))
       return format.read(bytes, name, options, control);
   }
-  return Error{ErrorCode::unsupported,
-               fmt::format("{} is of a kind that is not read; DXF drawings and CSV point lists are", name)};
+  return Error{
+      ErrorCode::unsupported,
+      fmt::format("{} is of a kind that is not read; DXF and SVG drawings and CSV point lists are", name)};
 }
 
 Result<Drawing> readDrawing(const std::string& path, const ReadOptions& options, RunControl& control) {

@@ -29,6 +29,7 @@ struct Drawing {
   std::string unitName;                      // "mm", "in", ... or "" when the file does not say
   std::string format;                        // "DXF", "CSV", ...
   std::vector<std::string> layers;           // in order of first use
+  std::vector<std::string> warnings;         // what the user should know about how it was read
 };
 
 struct ReadOptions {
@@ -56,5 +57,14 @@ Result<Drawing> readDxf(std::string_view bytes, std::string_view name, const Rea
                         RunControl& control);
 Result<Drawing> readCsvPoints(std::string_view bytes, std::string_view name, const ReadOptions& options,
                               RunControl& control);
+
+// SVG 1.1 and 2: arcs stay arcs, Beziers become splines; groups' labels or ids are the layers. y points
+// upwards from the page's lower edge. The unit is that of the page (px, 1/96 in, when it has no physical
+// size).
+//
+// Fails  cannotRead   not well-formed, cut short, or a page size that is not understood.
+//        unsupported  compressed, entities of its own, references to outside, too deep or too large.
+Result<Drawing> readSvg(std::string_view bytes, std::string_view name, const ReadOptions& options,
+                        RunControl& control);
 
 }  // namespace kf::read
