@@ -12,13 +12,6 @@ using curve::Curve;
 using curve::Jet;
 using curve::Vec2;
 
-double distanceToChord(Vec2 p, Vec2 a, Vec2 b) {
-  const Vec2 d = b - a;
-  const double square = curve::dot(d, d);
-  const double t = square > 0.0 ? std::clamp(curve::dot(p - a, d) / square, 0.0, 1.0) : 0.0;
-  return curve::distance(p, a + t * d);
-}
-
 // Where the blend passes the corner most closely, by Newton from its middle.
 double nearestToCorner(const Bezier5& blend, Vec2 corner) {
   double t = 0.5;
@@ -62,6 +55,13 @@ double sideBound(const Bezier5& blend, double t0, double t1, const CurvePart& pa
 }
 
 }  // namespace
+
+double distanceToChord(Vec2 p, Vec2 a, Vec2 b) {
+  const Vec2 d = b - a;
+  const double square = curve::dot(d, d);
+  const double t = square > 0.0 ? std::clamp(curve::dot(p - a, d) / square, 0.0, 1.0) : 0.0;
+  return curve::distance(p, a + t * d);
+}
 
 Vec2 bezierPoint(const Bezier5& b, double t) {
   Bezier5 c = b;

@@ -16,6 +16,9 @@ curve::Vec2 bezierPoint(const Bezier5& b, double t);
 curve::Jet bezierJet(const Bezier5& b, double t);
 curve::Curve bezierCurve(const Bezier5& b);
 
+// From p to the segment from a to b.
+double distanceToChord(curve::Vec2 p, curve::Vec2 a, curve::Vec2 b);
+
 // A stretch of a curve.
 struct CurvePart {
   const curve::Curve* curve = nullptr;
