@@ -13,6 +13,8 @@ namespace kf::curve {
 namespace {
 
 constexpr int kMaxHalvings = 60;
+// A coarser tolerance would be met before the rules resolve the span, and their difference would say nothing.
+constexpr double kCoarsest = 1e-8;
 
 struct Piece {
   double a, b, length;
@@ -109,7 +111,7 @@ Result<BoundedLength> arcLength(const Curve& curve, double a, double b, double t
   BoundedLength total;
   std::optional<Error> failed;
   eachSpan(curve, a, b, [&](double low, double high) {
-    auto part = smoothLength(curve, low, high, tolerance);
+    auto part = smoothLength(curve, low, high, std::min(tolerance, kCoarsest));
     if (!part) {
       failed = part.error();
       return false;
@@ -158,7 +160,8 @@ Result<double> parameterAtLength(const Curve& curve, double a, double s) {
 ClosestPoint closestPoint(const Curve& curve, Vec2 p) {
   if (const Line* line = curve.asLine()) {
     const Vec2 d = line->b - line->a;
-    const double u = std::clamp(dot(p - line->a, d) / dot(d, d), 0.0, 1.0);
+    const double square = dot(d, d);
+    const double u = square > 0.0 ? std::clamp(dot(p - line->a, d) / square, 0.0, 1.0) : 0.0;
     return {u, distance(curve.point(u), p)};
   }
   ClosestPoint best{curve.first(), distance(curve.startPoint(), p)};

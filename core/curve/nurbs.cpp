@@ -170,7 +170,10 @@ Box nurbsBounds(const Nurbs& nurbs) {
   const auto p = static_cast<std::size_t>(nurbs.degree);
   Box hull;
   for (Vec2 pole : nurbs.poles) hull.include(pole);
-  const double slack = 1e-13 * (hull.width() + hull.height());
+  // Far from the origin rounding exceeds the share of the size, and below it halving would never end.
+  const double farthest =
+      std::max({std::abs(hull.low.x), std::abs(hull.low.y), std::abs(hull.high.x), std::abs(hull.high.y)});
+  const double slack = std::max(1e-13 * (hull.width() + hull.height()), 1e-15 * farthest);
   std::array<double, 4> best{-HUGE_VAL, -HUGE_VAL, -HUGE_VAL, -HUGE_VAL};
   const std::array<Vec2, 4> directions = {Vec2{1.0, 0.0}, Vec2{-1.0, 0.0}, Vec2{0.0, 1.0}, Vec2{0.0, -1.0}};
   for (std::size_t k = p; k < nurbs.poles.size(); ++k) {
