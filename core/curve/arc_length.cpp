@@ -30,6 +30,9 @@ Result<BoundedLength> smoothLength(const Curve& curve, double a, double b, doubl
   const auto speed = [&curve](double u) { return speedAt(curve, u); };
   BoundedLength total;
   const double whole = numeric::gauss10(speed, a, b);
+  // What rounding of the coordinates alone can make of a piece; halving further would not help.
+  const double noise =
+      std::max(1e-16 * whole, 2e-16 * (norm(curve.jet(a).p) + norm(curve.jet(b, Side::left).p)));
   std::vector<Piece> open{{a, b, whole, 0}};
   while (!open.empty()) {
     const Piece piece = open.back();
@@ -40,8 +43,7 @@ Result<BoundedLength> smoothLength(const Curve& curve, double a, double b, doubl
     if (!std::isfinite(difference))
       return Error{ErrorCode::notConverged, "the length of a curve is not finite"};
     // The halves are about 2^20 times more accurate than their difference says, on smooth spans.
-    if (difference <= tolerance * (left + right) || difference <= 1e-16 * whole || m == piece.a ||
-        m == piece.b) {
+    if (difference <= tolerance * (left + right) || difference <= noise || m == piece.a || m == piece.b) {
       total.length += left + right;
       total.bound += difference;
       continue;

@@ -17,9 +17,9 @@ struct BoundedLength {
 // Domain    first() <= a <= b <= last(); a cusp or a repeated knot is allowed.
 // Fails     invalidArgument  a or b is not finite or lies outside.
 //           notConverged     a span needs more than 60 halvings.
-// Accuracy  bound <= tolerance * length (relative); a tolerance above 1e-8 counts as 1e-8. Exact for lines
-// and
-//           arcs. Tested against closed forms, and on seeded splines against a finer run.
+// Accuracy  bound <= tolerance * length (relative), but not below the rounding of the coordinates; a
+//           tolerance above 1e-8 counts as 1e-8. Exact for lines and arcs. Tested against closed forms, and
+//           on seeded splines against a finer run.
 // Cost      O(spans) evaluations for smooth spans; no allocation.
 // Source    Gauss-Legendre 10 against its two halves, adaptive; knots are split points.
 Result<BoundedLength> arcLength(const Curve& curve, double a, double b, double tolerance = 1e-12);
