@@ -97,6 +97,7 @@ Result<std::vector<pipeline::PreparedContour>> prepareChosen(const pipeline::Ope
     if (!one) return Error{one.error().code, drawing.name + ": " + one.error().message};
     prepared.push_back(std::move(*one));
   }
+  pipeline::numberParts(prepared, static_cast<int>(drawing.contours.size()));
   return prepared;
 }
 

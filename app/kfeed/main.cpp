@@ -42,6 +42,9 @@ void planOptions(CLI::App& verb, Request& request, std::string& pending) {
       ->allow_extra_args(false);
   verb.add_option("--law", request.law, "acceleration or jerk")
       ->check(CLI::IsMember({"acceleration", "jerk"}));
+  verb.add_option("--uncut", request.uncut,
+                  "where the tool does not reach the contour: trim (default, reported) or refuse")
+      ->check(CLI::IsMember({"trim", "refuse"}));
   verb.add_option("--joints", request.joints, "blend or exact")->check(CLI::IsMember({"blend", "exact"}));
   verb.add_option("--nodes", request.nodes, "about how many nodes along each contour")
       ->check(CLI::Range(50, 2'000'000));

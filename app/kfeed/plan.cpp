@@ -39,6 +39,14 @@ void printPrices(const std::vector<plan::Price>& prices) {
 }
 
 void printDrive(const pipeline::DriveReport& drive) {
+  if (!drive.uncut.empty()) {
+    const auto deepest = std::max_element(
+        drive.uncut.begin(), drive.uncut.end(),
+        [](const construct::UncutPlace& a, const construct::UncutPlace& b) { return a.depth < b.depth; });
+    fmt::print("   the tool does not reach {} place{}; the deepest, {:.3f} mm, at x {:.3f}, y {:.3f}\n",
+               drive.uncut.size(), drive.uncut.size() == 1 ? "" : "s", deepest->depth, deepest->point.x,
+               deepest->point.y);
+  }
   if (drive.blended + drive.stopped == 0) return;
   fmt::print("   joints: {} blended, at most {:.4f} mm off the wanted path, {} kept", drive.blended,
              drive.largestDeviation, drive.stopped);
@@ -81,6 +89,7 @@ pipeline::PlanOptions planOptions(const Request& request) {
   pipeline::PlanOptions options;
   if (!request.law.empty()) options.law = request.law == "jerk" ? plan::Law::jerk : plan::Law::acceleration;
   options.joints = request.joints == "exact" ? plan::Joints::exact : plan::Joints::blend;
+  options.refuseUncut = request.uncut == "refuse";
   options.targetNodes = static_cast<std::size_t>(request.nodes);
   return options;
 }

@@ -24,7 +24,7 @@ struct Request {
   std::string contours;  // "1,3-5"
   std::string limitsFile;
   std::vector<std::string> assignments;
-  std::string law, joints;
+  std::string law, joints, uncut;
   std::string points, summary, outputFolder;
   std::string sampling = "time";
   std::optional<double> step;

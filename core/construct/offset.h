@@ -26,7 +26,7 @@ struct OffsetOptions {
   ToolSide side = ToolSide::left;
   UncutPolicy uncut = UncutPolicy::trim;
   double curveTolerance = 1e-8;  // mm, for offsets that are no line or arc
-  double leastDepth = 1e-4;      // mm; shallower uncut places are not listed
+  double leastDepth = 1e-3;      // mm; shallower uncut places are not listed
 
   Result<void> validate() const;
 };

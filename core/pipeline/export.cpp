@@ -95,7 +95,18 @@ Json driveJson(const DriveReport& drive) {
                       {"length_mm", made.length},
                       {"short_neighbour", made.crowded}});
   }
-  return {{"joints_blended", drive.blended},
+  Json uncut = Json::array();
+  for (const construct::UncutPlace& place : drive.uncut) {
+    uncut.push_back({{"from_s_mm", place.from},
+                     {"to_s_mm", place.to},
+                     {"x_mm", place.point.x},
+                     {"y_mm", place.point.y},
+                     {"radius_mm", finite(place.radius)},
+                     {"depth_mm", finite(place.depth)},
+                     {"area_mm2", place.area ? Json(*place.area) : Json(nullptr)}});
+  }
+  return {{"uncut", std::move(uncut)},
+          {"joints_blended", drive.blended},
           {"joints_kept", drive.stopped},
           {"largest_deviation_mm", drive.largestDeviation},
           {"joints", std::move(joints)}};

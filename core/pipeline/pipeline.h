@@ -11,6 +11,7 @@
 #include "core/base/result.h"
 #include "core/base/run_control.h"
 #include "core/construct/blend.h"
+#include "core/construct/offset.h"
 #include "core/contour/contour.h"
 #include "core/limits/limits.h"
 #include "core/path/path.h"
@@ -49,6 +50,7 @@ struct PlanOptions {
   std::optional<plan::Law> law;  // empty: jerk where a jerk limit is given, else acceleration
   plan::Joints joints = plan::Joints::blend;
   std::map<int, std::vector<construct::JointChoice>> jointChoices;  // made by hand, by contour number
+  bool refuseUncut = false;  // refuse a contour that the tool does not reach everywhere
   std::size_t targetNodes = 2000;
 };
 
@@ -78,10 +80,11 @@ struct ContourFacts {
 
 // What became of the drawing's contour on its way to the driven path.
 struct DriveReport {
-  std::shared_ptr<const contour::Contour> wanted;  // the path that was asked for, before blending
+  std::shared_ptr<const contour::Contour> wanted;  // the path that was asked for: offset, before blending
   std::vector<construct::JointReport> joints;      // places on `wanted`; empty where joints are kept exactly
   double largestDeviation = 0.0;                   // mm, proved bound, driven against wanted
   std::size_t blended = 0, stopped = 0, crowded = 0;
+  std::vector<construct::UncutPlace> uncut;  // what the tool does not reach; places on the drawing's contour
 };
 
 struct PlannedContour {
@@ -103,11 +106,18 @@ struct PreparedContour {
 Result<PreparedContour> prepareContour(const contour::Contour& contour, int number,
                                        const PlanOptions& options, RunControl& control);
 
-// The paths that are driven for one contour of the drawing under these limits: joints blended within the path
-// tolerance unless options.joints says exact or there is no tolerance.
+// The paths that are driven for one contour of the drawing under these limits: offset by the tool's radius to
+// tool.side (that may give several), joints blended within the path tolerance unless options.joints says
+// exact or there is no tolerance. Fails  as construct::offsetContours and blendJoints; invalidArgument: a
+// side without a diameter; infeasible: the
+//        tool fits nowhere.
 Result<std::vector<PreparedContour>> prepareDriven(const contour::Contour& contour, int number,
                                                    const limits::Limits& limits, const PlanOptions& options,
                                                    RunControl& control);
+
+// Gives the second and later paths of one contour numbers of their own, after the `drawn` contours of the
+// drawing.
+void numberParts(std::vector<PreparedContour>& all, int drawn);
 
 // Geometric tight spots (local curvature maxima and tangent breaks, tightest first) for inspect.
 std::vector<TightSpot> geometricTightSpots(const path::Path& path);

@@ -54,6 +54,7 @@ Result<std::vector<pipeline::PreparedContour>> prepareAll(const pipeline::Opened
     if (!driven) return driven.error();
     for (pipeline::PreparedContour& one : *driven) all.push_back(std::move(one));
   }
+  pipeline::numberParts(all, number);
   return all;
 }
 
