@@ -3,13 +3,63 @@
 #include <algorithm>
 #include <cmath>
 #include <cstdio>
+#include <mutex>
 
 #include <fmt/format.h>
 
 #include "app/kfeed/verbs.h"
+#include "core/base/parallel.h"
 #include "core/read/text.h"
 
 namespace kf::kfeed {
+namespace {
+
+constexpr double kStraightFrom = 1e6;  // mm: no machine tells such a bend from a straight
+
+void write(FILE* stream, std::string_view text) {
+  std::fwrite(text.data(), 1, text.size(), stream);
+}
+
+}  // namespace
+
+void Answer::warn(const Request& request, std::string_view text) {
+  if (!request.quiet) err += fmt::format("kfeed: {}\n", text);
+}
+
+void Answer::fail(const Error& error) {
+  code = exitCodeFor(error.code);
+  if (code != kInterrupted) err += fmt::format("kfeed: {}\n", error.message);  // main says it once
+}
+
+bool say(const Answer& answer) {
+  write(stderr, answer.err);
+  std::fflush(stderr);
+  write(stdout, answer.out);
+  return std::fflush(stdout) == 0 && std::ferror(stdout) == 0;
+}
+
+int forEachDrawing(const Request& request, RunControl& control,
+                   const std::function<Answer(const std::string& path, int threads)>& work) {
+  const std::size_t count = request.drawings.size();
+  std::vector<std::optional<Answer>> answers(count);
+  std::size_t said = 0;
+  int worst = kDone;
+  std::mutex talking;
+  forEachIndex(count, request.threads, [&](std::size_t i) {
+    if (control.isCancelled()) return;
+    Answer answer = work(request.drawings[i], count > 1 ? 1 : request.threads);
+    const std::lock_guard lock(talking);
+    answers[i] = std::move(answer);
+    for (; said < count && answers[said]; ++said) {
+      const Answer& next = *answers[said];
+      if (!say(next)) worst = std::max<int>(worst, kUnwritable);
+      worst = std::max(worst, next.code);
+      answers[said]->out.clear();
+    }
+  });
+  // A drawing that was done before an interrupt has its files; what was begun has left none.
+  return said < count ? kInterrupted : worst;
+}
 
 int exitCodeFor(ErrorCode code) {
   switch (code) {
@@ -17,9 +67,9 @@ int exitCodeFor(ErrorCode code) {
       return kUsage;
     case ErrorCode::cannotRead:
     case ErrorCode::unsupported:
-    case ErrorCode::notConverged:
     case ErrorCode::needsUnit:
     case ErrorCode::needsConsent:
+    case ErrorCode::notConverged:
       return kUnreadable;
     case ErrorCode::cannotWrite:
       return kUnwritable;
@@ -30,15 +80,6 @@ int exitCodeFor(ErrorCode code) {
       return kInterrupted;
   }
   return kNo;
-}
-
-int fail(const Error& error) {
-  fmt::print(stderr, "kfeed: {}\n", error.message);
-  return exitCodeFor(error.code);
-}
-
-void warn(const Request& request, const std::string& text) {
-  if (!request.quiet) fmt::print(stderr, "kfeed: {}\n", text);
 }
 
 pipeline::OpenOptions openOptions(const Request& request) {
@@ -78,24 +119,32 @@ Result<std::vector<int>> contourNumbers(const std::string& list, int count) {
 }
 
 Result<std::vector<pipeline::PreparedContour>> prepareChosen(const pipeline::OpenedDrawing& drawing,
-                                                             const Request& request,
+                                                             const Request& request, int threads,
                                                              const limits::Limits* limits,
                                                              const pipeline::PlanOptions& options,
                                                              RunControl& control) {
+  using Prepared = Result<std::vector<pipeline::PreparedContour>>;
   auto numbers = contourNumbers(request.contours, static_cast<int>(drawing.contours.size()));
   if (!numbers) return numbers.error();
-  std::vector<pipeline::PreparedContour> prepared;
-  for (int number : *numbers) {
+  std::vector<std::optional<Prepared>> parts(numbers->size());
+  forEachIndex(parts.size(), threads, [&](std::size_t i) {
+    const int number = (*numbers)[i];
     const contour::Contour& contour = drawing.contours[static_cast<std::size_t>(number - 1)];
     if (limits != nullptr) {
-      auto driven = pipeline::prepareDriven(contour, number, *limits, options, control);
-      if (!driven) return Error{driven.error().code, drawing.name + ": " + driven.error().message};
-      for (pipeline::PreparedContour& one : *driven) prepared.push_back(std::move(one));
-      continue;
+      parts[i] = pipeline::prepareDriven(contour, number, *limits, options, control);
+      return;
     }
     auto one = pipeline::prepareContour(contour, number, options, control);
-    if (!one) return Error{one.error().code, drawing.name + ": " + one.error().message};
-    prepared.push_back(std::move(*one));
+    if (one) {
+      parts[i] = std::vector{std::move(*one)};
+    } else {
+      parts[i] = one.error();
+    }
+  });
+  std::vector<pipeline::PreparedContour> prepared;
+  for (auto& part : parts) {
+    if (!*part) return Error{part->error().code, drawing.name + ": " + part->error().message};
+    for (pipeline::PreparedContour& one : **part) prepared.push_back(std::move(one));
   }
   pipeline::numberParts(prepared, static_cast<int>(drawing.contours.size()));
   return prepared;
@@ -103,7 +152,11 @@ Result<std::vector<pipeline::PreparedContour>> prepareChosen(const pipeline::Ope
 
 std::string radiusText(double radius) {
   if (radius == 0.0) return "corner";
-  return std::isfinite(radius) ? fmt::format("{:.3f}", radius) : "straight";
+  return radius < kStraightFrom ? fmt::format("{:.3f}", radius) : "straight";
+}
+
+std::string counted(std::size_t n, std::string_view one) {
+  return fmt::format("{} {}{}", n, one, n == 1 ? "" : "s");
 }
 
 }  // namespace kf::kfeed

@@ -1,6 +1,8 @@
 // kfeed: the command line. Reads the options, stops cleanly on an interrupt, and hands over to a verb.
 // Units as the option names say.
 #include <CLI/CLI.hpp>
+#include <algorithm>
+#include <cmath>
 #include <csignal>
 #include <cstdio>
 #include <filesystem>
@@ -16,13 +18,25 @@ RunControl control;
 volatile std::sig_atomic_t interrupts = 0;
 
 // The second interrupt ends the program at once; outputs are written whole or not at all either way.
-void onInterrupt(int) {
+extern "C" void onInterrupt(int) {
   if (interrupts > 0) std::_Exit(kInterrupted);
   interrupts = 1;
   control.cancel();
 }
 
+// Without SA_RESTART: a read that waits for standard input ends with the first interrupt.
+void watchInterrupts() {
+  struct sigaction action {};
+  action.sa_handler = onInterrupt;
+  sigemptyset(&action.sa_mask);
+  for (int number : {SIGINT, SIGTERM}) sigaction(number, &action, nullptr);
+  std::signal(SIGPIPE, SIG_IGN);
+}
+
+const std::string kVersionText = std::string("kfeed ") + KAPPAFEED_VERSION;
+
 void commonOptions(CLI::App& verb, Request& request) {
+  verb.set_version_flag("--version", kVersionText);
   verb.add_option("DRAWING", request.drawings, "drawings to read (DXF, or CSV points); - for standard input")
       ->required();
   verb.add_flag("--json", request.json, "one JSON document on standard output, and nothing else there");
@@ -36,7 +50,7 @@ void commonOptions(CLI::App& verb, Request& request) {
 }
 
 void planOptions(CLI::App& verb, Request& request, std::string& pending) {
-  verb.add_option("--limits", request.limitsFile, "the limits file (JSON)")->required();
+  verb.add_option("--limits", request.limitsFile, "the limits file (JSON); - for standard input")->required();
   verb.add_option("--set", request.assignments, "NAME=VALUE, any limit by its dotted name; may be repeated")
       ->take_all()
       ->allow_extra_args(false);
@@ -53,21 +67,40 @@ void planOptions(CLI::App& verb, Request& request, std::string& pending) {
       ->check(CLI::IsMember({"chord", "time", "length"}));
   verb.add_option("--step", request.step, "mm of chord error, s, or mm");
   verb.add_option("--summary", request.summary, "write the summary here (JSON)");
-  verb.add_option("--output-folder", request.outputFolder,
-                  "with several drawings: outputs go here, named after each drawing; --points and --summary "
-                  "then give the ending, like .csv");
+  verb.add_option(
+      "--output-folder", request.outputFolder,
+      "outputs go into this folder, named after each drawing; --points and --summary then give the "
+      "ending, like .csv");
   verb.add_flag("--force", request.force, "replace existing output files");
   for (const char* name : {"--program", "--report", "--job"})
     verb.add_option(name, pending, "not available yet");
 }
 
 int usage(std::string_view text) {
-  fmt::print(stderr, "kfeed: {}\n", text);
-  return kUsage;
+  Answer answer;
+  answer.fail({ErrorCode::invalidArgument, std::string(text)});
+  say(answer);
+  return answer.code;
 }
 
 int notYet(std::string_view what) {
   return usage(fmt::format("{} is not available yet", what));
+}
+
+// What standard input and output can be shared by.
+int checkStreams(const Request& request) {
+  const auto fromStdin =
+      std::count(request.drawings.begin(), request.drawings.end(), "-") + (request.limitsFile == "-" ? 1 : 0);
+  if (fromStdin > 1) return usage("only one of the inputs can be standard input (-)");
+  const int toStdout =
+      (request.json ? 1 : 0) + (request.points == "-" ? 1 : 0) + (request.summary == "-" ? 1 : 0);
+  if (toStdout > 1) return usage("only one of --json, --points - and --summary - can have standard output");
+  if (request.isBatch() && toStdout > 0) {
+    return usage(
+        "several drawings can't share standard output; name one drawing, or use --summary with "
+        "--output-folder");
+  }
+  return kDone;
 }
 
 // What the options mean together, beyond what each says alone.
@@ -76,26 +109,28 @@ int checkPlan(const CLI::App& verb, const Request& request) {
     if (verb.count(name) > 0) return notYet(name);
   }
   if (request.law == "jerk") return notYet("--law jerk");
-  if (request.drawings.size() > 1 && request.json)
-    return usage("--json gives one document; name one drawing, or use --summary with --output-folder");
-  if (request.drawings.size() > 1 && request.outputFolder.empty() &&
+  if (request.isBatch() && request.outputFolder.empty() &&
       !(request.points.empty() && request.summary.empty())) {
     return usage("several drawings can't share an output file; name a folder with --output-folder");
   }
-  if (!request.outputFolder.empty() && !std::filesystem::is_directory(request.outputFolder)) {
-    return usage(fmt::format("{} is not a folder; make it first", request.outputFolder));
+  if (!request.outputFolder.empty()) {
+    std::error_code failure;
+    if (!std::filesystem::is_directory(request.outputFolder, failure))
+      return usage(fmt::format("{} is not a folder; make it first", request.outputFolder));
+    for (const std::string* ending : {&request.points, &request.summary}) {
+      if (!ending->empty() && (ending->find('/') != std::string::npos || ending->front() == '-'))
+        return usage(fmt::format("with --output-folder an output is named by its ending, like .csv, not '{}'",
+                                 *ending));
+    }
   }
-  const int toStdout =
-      (request.json ? 1 : 0) + (request.points == "-" ? 1 : 0) + (request.summary == "-" ? 1 : 0);
-  if (toStdout > 1) return usage("only one of --json, --points - and --summary - can have standard output");
-  if (request.step && !(*request.step > 0.0))
+  if (request.step && (!std::isfinite(*request.step) || !(*request.step > 0.0)))
     return usage(fmt::format("--step must be a positive number, not {}", *request.step));
   return kDone;
 }
 
 int run(int argc, char** argv) {
-  CLI::App app{"kfeed: feed planning along 2D contours, for scripts and batch work"};
-  app.set_version_flag("--version", std::string("kfeed ") + KAPPAFEED_VERSION);
+  CLI::App app{"kfeed: feed planning along 2D contours, for scripts and batch work", "kfeed"};
+  app.set_version_flag("--version", kVersionText);
   app.require_subcommand(1);
   Request request;
   std::string pending;
@@ -115,15 +150,17 @@ int run(int argc, char** argv) {
   } catch (const CLI::CallForVersion& e) {
     return app.exit(e);
   } catch (const CLI::ParseError& e) {
-    return usage(fmt::format("{}; see kfeed --help", e.what()));
+    if (app.get_subcommands().empty()) {
+      constexpr std::string_view verbs = "name a verb: inspect, plan, check or identify; see kfeed --help";
+      return usage(argc > 1 ? fmt::format("'{}' is neither a verb nor an option; {}", argv[1], verbs)
+                            : std::string(verbs));
+    }
+    return usage(fmt::format("{}; see kfeed {} --help", e.what(), app.get_subcommands().front()->get_name()));
   }
   if (app.got_subcommand("check")) return notYet("check");
   if (app.got_subcommand("identify")) return notYet("identify");
-  if (inspectVerb->parsed()) {
-    if (request.drawings.size() > 1 && request.json)
-      return usage("--json gives one document; name one drawing");
-    return inspect(request, control);
-  }
+  if (const int code = checkStreams(request); code != kDone) return code;
+  if (inspectVerb->parsed()) return inspect(request, control);
   if (const int code = checkPlan(*planVerb, request); code != kDone) return code;
   return plan(request, control);
 }
@@ -132,13 +169,16 @@ int run(int argc, char** argv) {
 }  // namespace kf::kfeed
 
 int main(int argc, char** argv) {
-  std::signal(SIGINT, kf::kfeed::onInterrupt);
-  std::signal(SIGTERM, kf::kfeed::onInterrupt);
-  std::signal(SIGPIPE, SIG_IGN);
-  const int code = kf::kfeed::run(argc, argv);
-  if (std::fflush(stdout) != 0 && code == kf::kfeed::kDone) {
-    fmt::print(stderr, "kfeed: standard output was not written whole\n");
-    return kf::kfeed::kUnwritable;
+  using namespace kf::kfeed;
+  watchInterrupts();
+  const int code = run(argc, argv);
+  if (code == kInterrupted) {
+    std::fputs("kfeed: interrupted; outputs are whole where they exist, and nothing was half-written\n",
+               stderr);
+  } else if (std::fflush(stdout) != 0 || std::ferror(stdout) != 0) {
+    std::fputs("kfeed: standard output could not be written; check the disk or the program it goes to\n",
+               stderr);
+    return kUnwritable;
   }
   return code;
 }

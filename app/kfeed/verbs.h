@@ -2,9 +2,13 @@
 // Units as the option names say.
 #pragma once
 
+#include <functional>
 #include <optional>
 #include <string>
+#include <string_view>
 #include <vector>
+
+#include <fmt/format.h>
 
 #include "core/base/result.h"
 #include "core/base/run_control.h"
@@ -29,30 +33,54 @@ struct Request {
   std::string sampling = "time";
   std::optional<double> step;
   int nodes = 2000;
+
+  bool isBatch() const { return drawings.size() > 1; }
 };
 
 int inspect(const Request& request, RunControl& control);
 int plan(const Request& request, RunControl& control);
 
-// Shared by the verbs.
+// What one drawing has to say. Gathered, so that drawings worked on side by side speak in their order.
+struct Answer {
+  std::string out;  // for standard output
+  std::string err;  // sentences for people
+  int code = kDone;
+
+  template <class... Arguments>
+  void print(fmt::format_string<Arguments...> format, Arguments&&... arguments) {
+    out += fmt::format(format, std::forward<Arguments>(arguments)...);
+  }
+  void warn(const Request& request, std::string_view text);
+  void fail(const Error& error);
+};
+
+// To the standard streams; never throws. False when standard output could not take it.
+bool say(const Answer& answer);
+
+// Calls work(path, threads inside it) for each drawing, side by side when there are several, says the answers
+// in the drawings' order, and returns the worst code.
+int forEachDrawing(const Request& request, RunControl& control,
+                   const std::function<Answer(const std::string& path, int threads)>& work);
+
 int exitCodeFor(ErrorCode code);
-// Prints one sentence to stderr and returns its exit code.
-int fail(const Error& error);
-void warn(const Request& request, const std::string& text);
 pipeline::OpenOptions openOptions(const Request& request);
 
 // Numbers from "1,3-5" within 1..count; all when empty.
 // Fails  invalidArgument  not such a list, or a number out of range.
 Result<std::vector<int>> contourNumbers(const std::string& list, int count);
 
-// Prepares the chosen contours of a drawing.
+// Prepares the chosen contours of a drawing: as they are driven under `limits`, or as they are drawn when
+// null.
 Result<std::vector<pipeline::PreparedContour>> prepareChosen(const pipeline::OpenedDrawing& drawing,
-                                                             const Request& request,
+                                                             const Request& request, int threads,
                                                              const limits::Limits* limits,
                                                              const pipeline::PlanOptions& options,
                                                              RunControl& control);
 
-// "12.34 mm", "straight" for infinity, "corner" for 0.
+// "12.340", "straight" from a kilometre on, "corner" for 0.
 std::string radiusText(double radius);
+
+// "1 contour", "2 contours".
+std::string counted(std::size_t n, std::string_view one);
 
 }  // namespace kf::kfeed

@@ -78,6 +78,7 @@ Result<void> checkValue(const Field& field, double value);
 //                    a value that is not a positive finite number or null. The message names `source` and the
 //                    key.
 Result<Limits> parseLimits(std::string_view json, std::string_view source);
+// "-" is standard input.
 // Fails  cannotRead  the file can't be opened, is larger than 1 MiB, or parseLimits refuses it.
 Result<Limits> readLimitsFile(const std::string& path);
 // The file's text; reading it back gives an equal value.

@@ -2,6 +2,7 @@
 // Units as the file's keys say.
 #include <algorithm>
 #include <fstream>
+#include <iostream>
 #include <set>
 #include <sstream>
 
@@ -155,14 +156,17 @@ Result<Limits> parseLimits(std::string_view json, std::string_view source) {
 }
 
 Result<Limits> readLimitsFile(const std::string& path) {
-  std::ifstream file(path, std::ios::binary);
-  if (!file) return refused(path, "can't be opened; check the name and that it may be read");
+  const std::string source = path == "-" ? "standard input" : path;
+  std::ifstream file;
+  if (path != "-") file.open(path, std::ios::binary);
+  std::istream& in = path == "-" ? std::cin : file;
+  if (!in) return refused(source, "can't be opened; check the name and that it may be read");
   std::string text(kLargestFile + 1, '\0');
-  file.read(text.data(), static_cast<std::streamsize>(text.size()));
-  if (file.bad() || (file.gcount() == 0 && !file.eof())) return refused(path, "can't be read");
-  text.resize(static_cast<std::size_t>(file.gcount()));
-  if (text.size() > kLargestFile) return refused(path, "is larger than 1 MiB and no limits file");
-  return parseLimits(text, path);
+  in.read(text.data(), static_cast<std::streamsize>(text.size()));
+  if (in.bad() || (in.gcount() == 0 && !in.eof())) return refused(source, "can't be read");
+  text.resize(static_cast<std::size_t>(in.gcount()));
+  if (text.size() > kLargestFile) return refused(source, "is larger than 1 MiB and no limits file");
+  return parseLimits(text, source);
 }
 
 std::string toJson(const Limits& limits) {

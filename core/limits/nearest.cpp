@@ -9,8 +9,8 @@
 namespace kf::limits {
 namespace {
 
-// What it costs to turn `a` into `b`. People leave endings such as units out more often than they mistype, so adding a
-// character costs less than changing or dropping one.
+// What it costs to turn `a` into `b`. People leave endings such as units out more often than they mistype, so
+// adding a character costs less than changing or dropping one.
 constexpr std::size_t kAdd = 1, kChange = 3;
 
 std::size_t editDistance(std::string_view a, std::string_view b) {

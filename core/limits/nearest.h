@@ -8,7 +8,8 @@
 
 namespace kf::limits {
 
-// By edit distance in which adding a character is cheaper than changing or dropping one; the first of equals; empty when `known` is.
+// By edit distance in which adding a character is cheaper than changing or dropping one; the first of equals;
+// empty when `known` is.
 std::string nearest(std::string_view word, const std::vector<std::string_view>& known);
 
 }  // namespace kf::limits

@@ -28,6 +28,10 @@ write::Sampling samplingFor(Sampling sampling) {
   return write::Sampling::time;
 }
 
+std::string_view lawText(plan::Law law) {
+  return law == plan::Law::jerk ? "jerk" : "acceleration";
+}
+
 // Infinity (a straight) is null in JSON.
 Json finite(double value) {
   return std::isfinite(value) ? Json(value) : Json(nullptr);
@@ -114,6 +118,7 @@ Json driveJson(const DriveReport& drive) {
 
 Json plannedJson(const PlannedContour& planned) {
   Json row = factsJson(planned.facts);
+  row["law"] = lawText(planned.law);
   row["time_s"] = planned.plan.time;
   row["time_lower_bound_s"] = planned.plan.lowerBound;
   row["mean_feed_mm_per_min"] = planned.meanFeed * 60.0;
@@ -154,6 +159,11 @@ Result<std::string> pointListFor(const OpenedDrawing& drawing, const std::vector
   head.source = drawing.name;
   head.sourceSha256 = drawing.sha256;
   head.limits = limits.name + (limits.example ? " (an example, not a real machine's)" : "");
+  if (!contours.empty()) head.law = lawText(contours.front().law);
+  for (const limits::Field& field : limits::fields()) {
+    if (const auto value = field.get(limits))
+      head.limitValues.push_back(fmt::format("{}={}", field.name, *value));
+  }
   head.version = KAPPAFEED_VERSION;
   head.sampling = samplingFor(request.sampling);
   head.step = request.step;
@@ -161,6 +171,8 @@ Result<std::string> pointListFor(const OpenedDrawing& drawing, const std::vector
   for (const PlannedContour& planned : contours) {
     write::PointListContour entry;
     entry.number = planned.facts.number;
+    entry.name = planned.facts.name;
+    entry.closed = planned.facts.closed;
     entry.schedule = &planned.plan.schedule;
     for (const contour::Joint& joint : planned.facts.joints) {
       if (joint.kind == contour::JointKind::tangentBreak && joint.s < planned.facts.length)
@@ -168,7 +180,7 @@ Result<std::string> pointListFor(const OpenedDrawing& drawing, const std::vector
     }
     entry.at = [path = planned.path, hint = std::size_t{0}](double s) mutable {
       const path::Sample sample = path->sample(s, hint);
-      return write::PathPoint{{sample.x, sample.y}, sample.k};
+      return write::PathPoint{sample.x, sample.y, sample.k};
     };
     list.push_back(std::move(entry));
   }

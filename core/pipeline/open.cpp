@@ -58,6 +58,7 @@ Result<OpenedDrawing> openDrawing(const std::string& path, const OpenOptions& op
   read::ReadOptions reading;
   reading.layers = options.layers;
   auto bytes = read::readBytes(path, reading.maxBytes);
+  if (control.isCancelled()) return Error{ErrorCode::cancelled, path + ": stopped while reading"};
   if (!bytes) return bytes.error();
   auto drawing = read::readDrawingBytes(*bytes, path, reading, control);
   if (!drawing) return drawing.error();

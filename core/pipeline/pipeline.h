@@ -91,6 +91,7 @@ struct PlannedContour {
   ContourFacts facts;
   std::shared_ptr<const path::Path> path;
   std::shared_ptr<const DriveReport> drive;  // null when the drawing's contour is driven as it is
+  plan::Law law = plan::Law::acceleration;   // that it was planned by
   plan::Plan plan;
   double meanFeed = 0.0;              // mm/s
   std::vector<TightSpot> tightSpots;  // worst first, by time lost

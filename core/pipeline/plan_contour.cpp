@@ -144,6 +144,7 @@ Result<PlannedContour> planContour(const PreparedContour& prepared, const limits
   planned.facts = prepared.facts;
   planned.path = prepared.path;
   planned.drive = prepared.drive;
+  planned.law = planning.law;
   planned.plan = std::move(*plan);
   planned.meanFeed = prepared.facts.length / planned.plan.time;
   planned.tightSpots = spotsOf(*prepared.path, planned.plan, *limits.feed);

@@ -48,8 +48,8 @@ class Rows {
     out_ += std::to_string(contour_.number);
     for (const auto& [value, digits] : {std::pair{state.s, 8},
                                         {state.t, 10},
-                                        {p.point.x, 8},
-                                        {p.point.y, 8},
+                                        {p.x, 8},
+                                        {p.y, 8},
                                         {state.v * 60.0, 6},
                                         {state.a, 4},
                                         {state.j, 2},
@@ -74,9 +74,10 @@ class Rows {
 };
 
 // Distance of `p` from the line through a and b; from a when they coincide.
-double offChord(curve::Vec2 a, curve::Vec2 b, curve::Vec2 p) {
-  const double n = curve::norm(b - a);
-  return n > 0.0 ? std::abs(curve::cross(b - a, p - a)) / n : curve::distance(a, p);
+double offChord(const PathPoint& a, const PathPoint& b, const PathPoint& p) {
+  const double bx = b.x - a.x, by = b.y - a.y, px = p.x - a.x, py = p.y - a.y;
+  const double n = std::hypot(bx, by);
+  return n > 0.0 ? std::abs(bx * py - by * px) / n : std::hypot(px, py);
 }
 
 // Arc lengths of rows whose chords stay within `error`: halve a stride until five inner points agree.
@@ -91,12 +92,12 @@ std::vector<double> chordPlaces(const PointListContour& contour, double error, R
     const double from = places.back();
     while (corners[corner] <= from) ++corner;
     stride = std::min({2.0 * stride, longest, corners[corner] - from});
-    const curve::Vec2 a = contour.at(from).point;
+    const PathPoint a = contour.at(from);
     for (;; stride *= 0.7) {
-      const curve::Vec2 b = contour.at(from + stride).point;
+      const PathPoint b = contour.at(from + stride);
       double worst = 0.0;
       for (double part : {0.15, 0.35, 0.5, 0.65, 0.85})
-        worst = std::max(worst, offChord(a, b, contour.at(from + part * stride).point));
+        worst = std::max(worst, offChord(a, b, contour.at(from + part * stride)));
       if (worst <= 0.98 * error || stride < 1e-6) break;
     }
     const bool arrives = corners[corner] - from - stride <= 1e-9 * length;
@@ -165,6 +166,14 @@ Result<std::string> pointListText(const PointListHead& head, const std::vector<P
   out += fmt::format("# kappafeed {} point list, lengths in mm, times in s\n", head.version);
   out += fmt::format("# source: {} sha256 {}\n", oneLine(head.source), head.sourceSha256);
   out += fmt::format("# limits: {}\n", oneLine(head.limits));
+  out +=
+      fmt::format("# law: {}{}\n", head.law, head.law == "acceleration" ? " (jerk limits are not used)" : "");
+  for (const std::string& value : head.limitValues) out += fmt::format("# limit {}\n", oneLine(value));
+  for (const PointListContour& contour : contours) {
+    out +=
+        fmt::format("# contour {}: {}, {}, {} mm, {} s\n", contour.number, oneLine(contour.name),
+                    contour.closed ? "closed" : "open", contour.schedule->length(), contour.schedule->time());
+  }
   out += fmt::format("# sampled every {} {}\n", head.step, unitOf(head.sampling));
   out +=
       "# UNPROVEN: check the limits against the machine builder's data; guards closed; verify offsets and "

@@ -8,7 +8,6 @@
 
 #include "core/base/result.h"
 #include "core/base/run_control.h"
-#include "core/curve/vec2.h"
 #include "core/schedule/schedule.h"
 
 namespace kf::write {
@@ -17,12 +16,14 @@ enum class Sampling { chord, time, length };
 
 // Geometry at arc length, as the planner's path gives it.
 struct PathPoint {
-  curve::Vec2 point;
+  double x = 0.0, y = 0.0;
   double curvature = 0.0;
 };
 
 struct PointListContour {
   int number = 1;
+  std::string name;
+  bool closed = false;
   const schedule::Schedule* schedule = nullptr;
   std::function<PathPoint(double s)> at;  // called with rising s
   std::vector<double> corners;            // arc lengths that must be rows: tangent breaks
@@ -31,7 +32,9 @@ struct PointListContour {
 struct PointListHead {
   std::string source;  // drawing's file name
   std::string sourceSha256;
-  std::string limits;  // their name
+  std::string limits;                    // their name
+  std::vector<std::string> limitValues;  // "path.feed_mm_per_min=9000", one a limit
+  std::string law;                       // "acceleration": jerk limits were not used; or "jerk"
   std::string version;
   Sampling sampling = Sampling::time;
   double step = 0.001;
