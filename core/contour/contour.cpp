@@ -16,16 +16,9 @@ using curve::Curve;
 using curve::Side;
 using curve::Vec2;
 
-// The tangent and curvature as the end of the domain is approached; steps inward from a cusp or a doubled
-// pole.
+// The tangent and curvature as the end of the domain is approached.
 Bend bendAtEnd(const Curve& c, bool atStart) {
-  const double from = c.first(), to = c.last();
-  Bend b = curve::bend(c.jet(atStart ? from : to, atStart ? Side::right : Side::left));
-  for (double step = 1e-9; !b.regular && step < 1e-3; step *= 10.0) {
-    const double u = atStart ? from + step * (to - from) : to - step * (to - from);
-    b = curve::bend(c.jet(u, atStart ? Side::right : Side::left));
-  }
-  return b;
+  return curve::bendNear(c, atStart ? c.first() : c.last(), atStart ? Side::right : Side::left);
 }
 
 Joint jointBetween(const Curve& before, const Curve& after, const JointOptions& options) {
@@ -44,6 +37,19 @@ Joint jointBetween(const Curve& before, const Curve& after, const JointOptions& 
   return joint;
 }
 
+// Integral of `rate` from a to b: ten-point Gauss against its two halves until they agree to 1e-13, or to
+// `noise`.
+template <class Rate>
+double integral(const Rate& rate, double a, double b, double whole, double noise, int depth) {
+  const double m = 0.5 * (a + b);
+  const double left = numeric::gauss10(rate, a, m), right = numeric::gauss10(rate, m, b);
+  const double difference = std::abs(left + right - whole);
+  constexpr int kDeepest = 40;
+  if (!(difference > std::max(noise, 1e-13 * (std::abs(left) + std::abs(right)))) || depth == kDeepest)
+    return left + right;
+  return integral(rate, a, m, left, noise, depth + 1) + integral(rate, m, b, right, noise, depth + 1);
+}
+
 // Twice the area swept about `origin`: the integral of (c - o) x c' du.
 double sweptTwice(const Curve& c, Vec2 origin) {
   if (const curve::Line* line = c.asLine()) return curve::cross(line->a - origin, line->b - line->a);
@@ -55,14 +61,12 @@ double sweptTwice(const Curve& c, Vec2 origin) {
     const curve::Jet j = c.jet(u);
     return curve::cross(j.p - origin, j.d1);
   };
-  for (std::size_t i = 0; i + 1 < cuts.size(); ++i) {
-    constexpr int kParts = 8;  // an arc of a full turn is then good to 1e-15
-    const double width = (cuts[i + 1] - cuts[i]) / kParts;
-    for (int part = 0; part < kParts; ++part) {
-      const double low = cuts[i] + part * width;
-      sum += numeric::gauss10(rate, low, part + 1 == kParts ? cuts[i + 1] : low + width);
-    }
-  }
+  const curve::Box box = c.bounds();
+  const double size = box.width() + box.height();
+  const double far = curve::norm(box.low) + curve::norm(box.high) + curve::norm(origin);
+  const double noise = 1e-16 * size * (size + far);  // rounding of the coordinates
+  for (std::size_t i = 0; i + 1 < cuts.size(); ++i)
+    sum += integral(rate, cuts[i], cuts[i + 1], numeric::gauss10(rate, cuts[i], cuts[i + 1]), noise, 0);
   return sum;
 }
 

@@ -176,4 +176,18 @@ Bend bend(const Jet& jet) {
   return b;
 }
 
+// At a cusp rounding leaves a first derivative of some 1e-16 of the others, whose direction means nothing.
+Bend bendNear(const Curve& curve, double u, Side side) {
+  const double width = curve.last() - curve.first();
+  const auto at = [&](double step) {
+    const Jet j = curve.jet(side == Side::right ? u + step * width : u - step * width, side);
+    Bend b = bend(j);
+    if (!(norm(j.d1) > 1e-12 * width * (norm(j.d2) + width * norm(j.d3)))) b = Bend{{}, 0.0, 0.0, false};
+    return b;
+  };
+  Bend b = at(0.0);
+  for (double step = 1e-9; !b.regular && step < 1e-3; step *= 10.0) b = at(step);
+  return b;
+}
+
 }  // namespace kf::curve

@@ -120,4 +120,9 @@ struct Bend {
 };
 Bend bend(const Jet& jet);
 
+// The bend as `u` is approached from one side. Where the speed vanishes to rounding (a cusp, a doubled pole)
+// that of a place just inside: the tangent is then the limit to 1e-6. Domain: first() <= u <= last();
+// Side::right needs room after u, Side::left before it.
+Bend bendNear(const Curve& curve, double u, Side side);
+
 }  // namespace kf::curve

@@ -106,7 +106,7 @@ class Density {
 void addNode(Path& path, const contour::Contour& contour, std::uint32_t segment, double u, double s,
              Side side) {
   const Curve& c = contour.segments[segment].curve;
-  const curve::Bend bend = bendNear(c, u, side);
+  const curve::Bend bend = curve::bendNear(c, u, side);
   const curve::Vec2 p = c.point(u);
   path.s.push_back(s);
   path.x.push_back(p.x);
@@ -225,7 +225,7 @@ Sample Path::sample(double at, std::size_t& hint) const {
     }
   }
   const bool end = want >= width;
-  const curve::Bend bend = bendNear(c, v, end ? Side::left : Side::right);
+  const curve::Bend bend = curve::bendNear(c, v, end ? Side::left : Side::right);
   const curve::Vec2 p = c.point(v);
   return {p.x, p.y, bend.tangent.x, bend.tangent.y, bend.k, bend.dkds};
 }

@@ -111,7 +111,7 @@ Result<void> sampleStretch(const Curve& c, Stretch& stretch) {
   for (int i = 0; i <= kFineParts; ++i) {
     const double u =
         i == kFineParts ? stretch.to : stretch.from + (stretch.to - stretch.from) * i / kFineParts;
-    const Bend bend = bendNear(c, u, i == kFineParts ? Side::left : Side::right);
+    const Bend bend = curve::bendNear(c, u, i == kFineParts ? Side::left : Side::right);
     const double k = std::abs(bend.k), root = std::sqrt(std::abs(bend.dkds));
     if (i > 0) {
       auto part = curve::arcLength(c, stretch.u.back(), u);
@@ -152,15 +152,6 @@ Error namedAfter(const contour::Segment& segment, Error error) {
 }
 
 }  // namespace
-
-curve::Bend bendNear(const Curve& c, double u, Side side) {
-  Bend bend = curve::bend(c.jet(u, side));
-  const double width = c.last() - c.first();
-  for (double step = 1e-9; !bend.regular && step < 1e-3; step *= 10.0) {
-    bend = curve::bend(c.jet(side == Side::right ? u + step * width : u - step * width, side));
-  }
-  return bend;
-}
 
 Result<Stretches> findStretches(const contour::Contour& contour, const Options& options,
                                 RunControl& control) {

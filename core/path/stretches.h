@@ -33,7 +33,4 @@ struct Stretches {
 // Fails  as buildPath.
 Result<Stretches> findStretches(const contour::Contour& contour, const Options& options, RunControl& control);
 
-// Tangent, curvature and slope at one end of a smooth piece; at a cusp those just inside.
-curve::Bend bendNear(const curve::Curve& curve, double u, curve::Side side);
-
 }  // namespace kf::path
