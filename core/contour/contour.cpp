@@ -7,6 +7,7 @@
 
 #include "core/curve/arc_length.h"
 #include "core/numeric/gauss_legendre.h"
+#include "core/numeric/roots.h"
 
 namespace kf::contour {
 namespace {
@@ -70,6 +71,48 @@ double sweptTwice(const Curve& c, Vec2 origin) {
   return sum;
 }
 
+// Places strictly inside the smooth span [a, b] where the speed vanishes: minima of |c'| that reach zero to
+// rounding.
+void findCusps(const Curve& c, double a, double b, std::vector<double>& cuts) {
+  constexpr int kParts = 24;
+  const auto place = [a, b](int i) { return i == kParts ? b : a + (b - a) * i / kParts; };
+  const auto rise = [&c](double u) {
+    const curve::Jet j = c.jet(u);
+    return curve::dot(j.d1, j.d2);
+  };
+  double fastest = 0.0;
+  for (int i = 0; i <= kParts; ++i) fastest = std::max(fastest, curve::norm(c.jet(place(i)).d1));
+  double before = rise(a);
+  for (int i = 1; i <= kParts; ++i) {
+    const double now = rise(i == kParts ? b - 1e-9 * (b - a) : place(i));
+    if (before <= 0.0 && now > 0.0) {
+      const double u = numeric::findRoot(rise, place(i - 1), place(i), 0.0);
+      const bool inside = u > a + 1e-9 * (b - a) && u < b - 1e-9 * (b - a);
+      if (inside && curve::norm(c.jet(u).d1) <= 1e-9 * fastest) cuts.push_back(u);
+    }
+    before = now;
+  }
+}
+
+// Where a curve may change its direction or curvature at once: knots of multiplicity >= degree - 1, and
+// cusps.
+std::vector<double> splitPlaces(const Curve& c) {
+  std::vector<double> cuts;
+  const curve::Nurbs* spline = c.asNurbs();
+  if (spline == nullptr) return cuts;
+  const auto& knots = spline->knots;
+  double from = c.first();
+  std::vector<double> ends = c.breaks();
+  ends.push_back(c.last());
+  for (double to : ends) {
+    if (spline->degree > 1) findCusps(c, from, to, cuts);
+    const auto range = std::equal_range(knots.begin(), knots.end(), to);
+    if (to < c.last() && range.second - range.first >= spline->degree - 1) cuts.push_back(to);
+    from = to;
+  }
+  return cuts;
+}
+
 }  // namespace
 
 std::vector<Joint> findJoints(const Contour& contour, const JointOptions& options) {
@@ -91,15 +134,7 @@ Contour splitAtKnots(const Contour& contour) {
   Contour out = contour;
   out.segments.clear();
   for (const Segment& segment : contour.segments) {
-    const curve::Nurbs* spline = segment.curve.asNurbs();
-    std::vector<double> cuts;
-    if (spline != nullptr) {
-      const auto& knots = spline->knots;
-      for (double u : segment.curve.breaks()) {
-        const auto range = std::equal_range(knots.begin(), knots.end(), u);
-        if (range.second - range.first >= spline->degree - 1) cuts.push_back(u);
-      }
-    }
+    std::vector<double> cuts = splitPlaces(segment.curve);
     if (cuts.empty()) {
       out.segments.push_back(segment);
       continue;

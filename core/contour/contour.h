@@ -50,7 +50,7 @@ struct JointOptions {
 std::vector<Joint> findJoints(const Contour& contour, const JointOptions& options = {});
 
 // The same contour with every spline cut at its inner knots of multiplicity >= degree - 1, where curvature
-// may jump.
+// may jump, and at its cusps, where the direction turns back.
 Contour splitAtKnots(const Contour& contour);
 
 double length(const Contour& contour);

@@ -40,15 +40,24 @@ void findCuts(const Curve& c, double a, double b, std::vector<double>& cuts) {
     return what == 0 ? bend.tangent.x : what == 1 ? bend.tangent.y : bend.dkds;
   };
   const double margin = 1e-9 * (b - a);
-  double before[3] = {};
+  double before[3] = {}, zero[3] = {HUGE_VAL, HUGE_VAL, HUGE_VAL};  // last value, and an exact zero since
   for (int i = 0; i <= kScanParts; ++i) {
     const double u = i == 0 ? a + margin : i == kScanParts ? b - margin : a + (b - a) * i / kScanParts;
     const Bend bend = curve::bend(c.jet(u));
     const double now[3] = {bend.tangent.x, bend.tangent.y, bend.dkds};
     for (int what = 0; what < 3; ++what) {
-      const double previous = before[what];
+      if (now[what] == 0.0) {
+        if (before[what] != 0.0 && zero[what] == HUGE_VAL) zero[what] = u;
+        continue;
+      }
+      const double previous = before[what], between = zero[what];
       before[what] = now[what];
-      if (i == 0 || previous == 0.0 || now[what] == 0.0 || (previous < 0.0) == (now[what] < 0.0)) continue;
+      zero[what] = HUGE_VAL;
+      if (previous == 0.0 || (previous < 0.0) == (now[what] < 0.0)) continue;
+      if (between != HUGE_VAL) {
+        cuts.push_back(between);
+        continue;
+      }
       const double from = i == 1 ? a + margin : a + (b - a) * (i - 1) / kScanParts;
       cuts.push_back(numeric::findRoot([&](double x) { return along(x, what); }, from, u, 1e-13 * (b - a)));
     }
