@@ -108,7 +108,9 @@ std::vector<Cut> mandatoryCuts(const Curve& c) {
 Result<void> sampleStretch(const Curve& c, Stretch& stretch) {
   if (c.asLine() != nullptr || c.asArc() != nullptr) {
     const double k = c.asArc() != nullptr ? 1.0 / c.asArc()->radius : 0.0;
-    stretch.length = curve::arcLength(c, stretch.from, stretch.to)->length;
+    auto even = curve::arcLength(c, stretch.from, stretch.to);
+    if (!even) return even.error();
+    stretch.length = even->length;
     stretch.u = {stretch.from, stretch.to};
     stretch.s = {0.0, stretch.length};
     stretch.turn = {0.0, k * stretch.length};
@@ -171,8 +173,11 @@ Result<Stretches> findStretches(const contour::Contour& contour, const Options& 
     if (control.isCancelled()) return Error{ErrorCode::cancelled, "cancelled"};
     const contour::Segment& segment = contour.segments[i];
     const curve::Box box = segment.curve.bounds();
-    if (!curve::isFinite(box.low) || !curve::isFinite(box.high)) {
-      return namedAfter(segment, {ErrorCode::invalidArgument, "a coordinate is not finite"});
+    // The box alone would pass over NaN.
+    if (!curve::isFinite(box.low) || !curve::isFinite(box.high) ||
+        !curve::isFinite(segment.curve.startPoint()) || !curve::isFinite(segment.curve.endPoint())) {
+      return namedAfter(segment, {ErrorCode::invalidArgument,
+                                  "a coordinate is not a finite number; correct it in the drawing"});
     }
     const std::vector<Cut> cuts = mandatoryCuts(segment.curve);
     for (std::size_t j = 0; j + 1 < cuts.size(); ++j) {
