@@ -7,6 +7,7 @@
 #include <cstdint>
 #include <limits>
 #include <numeric>
+#include <tuple>
 
 #include "core/contour/close_gaps.h"
 #include "core/curve/arc_length.h"
@@ -30,8 +31,14 @@ struct End {
 
 struct Pair {
   double distance;
-  double bend;  // 0: straight on, 2: back on itself
+  double grains;  // distance in steps that are told apart
+  double bend;    // 0: straight on, 2e9: back on itself; whole numbers
   std::size_t a, b;
+};
+
+struct Placed {
+  std::int64_t cx, cy;
+  std::size_t end;
 };
 
 class UnionFind {
@@ -69,24 +76,32 @@ class Chainer {
       return Error{ErrorCode::invalidArgument, "the chaining tolerance must be a positive number of mm"};
     }
     if (auto ready = collectEnds(); !ready) return ready.error();
-    if (control_.isCancelled()) return Error{ErrorCode::cancelled, "cancelled"};
-    findPairs();
-    if (control_.isCancelled()) return Error{ErrorCode::cancelled, "cancelled"};
+    joinRuns();
+    control_.report(0.3);
+    if (!findPairs()) return Error{ErrorCode::cancelled, "cancelled"};
+    control_.report(0.6);
     joinPairs();
-    walkAll();
+    control_.report(0.7);
+    if (!walkAll()) return Error{ErrorCode::cancelled, "cancelled"};
+    control_.report(1.0);
     return std::move(report_);
   }
 
  private:
+  // True now and then, when the user has asked to stop.
+  bool stopAt(std::size_t i) const { return (i & 4095U) == 0 && control_.isCancelled(); }
+
   Result<void> collectEnds() {
     const std::size_t n = curves_.size();
+    lengths_.resize(n);
     ends_.resize(2 * n);
     usable_.assign(n, true);
     partner_.assign(2 * n, kNone);
     const double cell = options_.tolerance;
     for (std::size_t i = 0; i < n; ++i) {
+      if (stopAt(i)) return Error{ErrorCode::cancelled, "cancelled"};
       const curve::Curve& c = curves_[i].curve;
-      const double length = curve::totalLength(c);
+      lengths_[i] = curve::totalLength(c);
       for (std::size_t side = 0; side < 2; ++side) {
         End& end = ends_[2 * i + side];
         end.point = side == 0 ? c.startPoint() : c.endPoint();
@@ -100,80 +115,103 @@ class Chainer {
         end.cx = static_cast<std::int64_t>(std::floor(end.point.x / cell));
         end.cy = static_cast<std::int64_t>(std::floor(end.point.y / cell));
       }
-      if (!(length > 0.0)) {
+      if (!(lengths_[i] > 0.0)) {
         usable_[i] = false;
         ++report_.zeroLengthDropped;
-      } else if (curve::distance(ends_[2 * i].point, ends_[2 * i + 1].point) <= cell && length > 4.0 * cell) {
-        partner_[2 * i] = 2 * i + 1;  // closed by itself
-        partner_[2 * i + 1] = 2 * i;
       }
     }
     return {};
   }
 
+  void link(std::size_t a, std::size_t b) {
+    partner_[a] = b;
+    partner_[b] = a;
+    report_.largestGap = std::max(report_.largestGap, curve::distance(ends_[a].point, ends_[b].point));
+  }
+
+  // Pieces of one entity are joined as they stand in it. A run whose ends meet is closed, a single curve too.
+  void joinRuns() {
+    const double reach = options_.tolerance;
+    const auto near = [&](std::size_t a, std::size_t b) {
+      return curve::distance(ends_[a].point, ends_[b].point) <= reach;
+    };
+    std::size_t first = kNone, last = kNone;
+    double length = 0.0;
+    const auto finish = [&] {
+      if (first != kNone && near(2 * last + 1, 2 * first) && length > 4.0 * reach)
+        link(2 * last + 1, 2 * first);
+      first = kNone;
+    };
+    for (std::size_t i = 0; i < curves_.size(); ++i) {
+      if (!usable_[i]) continue;
+      if (first != kNone && curves_[i].follows && curves_[i].layer == curves_[last].layer &&
+          near(2 * last + 1, 2 * i)) {
+        link(2 * last + 1, 2 * i);
+      } else {
+        finish();
+        first = i;
+        length = 0.0;
+      }
+      last = i;
+      length += lengths_[i];
+    }
+    finish();
+  }
+
   // Candidates are looked for in an end's own cell and the four that follow it, so that each pair is met
   // once.
-  void findPairs() {
-    std::vector<std::size_t> order;
+  bool findPairs() {
+    std::vector<Placed> order;
     for (std::size_t e = 0; e < ends_.size(); ++e) {
-      if (usable_[e / 2] && partner_[e] == kNone) order.push_back(e);
+      if (usable_[e / 2] && partner_[e] == kNone) order.push_back({ends_[e].cx, ends_[e].cy, e});
     }
-    const auto less = [this](std::size_t a, std::size_t b) {
-      const End &p = ends_[a], &q = ends_[b];
-      if (p.cx != q.cx) return p.cx < q.cx;
-      if (p.cy != q.cy) return p.cy < q.cy;
-      return a < b;
-    };
-    std::sort(order.begin(), order.end(), less);
+    const auto key = [](const Placed& p) { return std::tuple(p.cx, p.cy, p.end); };
+    std::sort(order.begin(), order.end(),
+              [&key](const Placed& p, const Placed& q) { return key(p) < key(q); });
     const auto cellBegin = [&](std::int64_t cx, std::int64_t cy) {
-      return std::lower_bound(order.begin(), order.end(), 0, [&](std::size_t e, int) {
-        return ends_[e].cx < cx || (ends_[e].cx == cx && ends_[e].cy < cy);
-      });
+      return std::lower_bound(order.begin(), order.end(), std::pair(cx, cy),
+                              [](const Placed& p, const auto& cell) { return std::pair(p.cx, p.cy) < cell; });
     };
     for (auto at = order.begin(); at != order.end(); ++at) {
-      const End& end = ends_[*at];
-      offerFrom(*at, at + 1, order.end(), end.cx, end.cy);
-      const std::int64_t next[3][2] = {
-          {end.cx + 1, end.cy - 1}, {end.cx + 1, end.cy}, {end.cx + 1, end.cy + 1}};
-      offerFrom(*at, cellBegin(end.cx, end.cy + 1), order.end(), end.cx, end.cy + 1);
-      if (cellBegin(end.cx + 1, end.cy - 1) == order.end()) continue;
-      for (const auto& cell : next)
-        offerFrom(*at, cellBegin(cell[0], cell[1]), order.end(), cell[0], cell[1]);
+      if (stopAt(static_cast<std::size_t>(at - order.begin()))) return false;
+      offerFrom(at->end, at + 1, order.end(), at->cx, at->cy);
+      offerFrom(at->end, cellBegin(at->cx, at->cy + 1), order.end(), at->cx, at->cy + 1);
+      // The three cells of the next column stand together.
+      auto beside = cellBegin(at->cx + 1, at->cy - 1);
+      for (std::int64_t dy = -1; dy <= 1; ++dy) {
+        const bool isBefore = beside != order.end() && beside->cx == at->cx + 1 && beside->cy < at->cy + dy;
+        if (isBefore) beside = cellBegin(at->cx + 1, at->cy + dy);
+        offerFrom(at->end, beside, order.end(), at->cx + 1, at->cy + dy);
+      }
     }
+    return true;
   }
 
   template <class Iterator>
   void offerFrom(std::size_t e, Iterator from, Iterator end, std::int64_t cx, std::int64_t cy) {
+    const double grain = 0.01 * options_.tolerance;
     std::size_t seen = 0;
-    for (; from != end && ends_[*from].cx == cx && ends_[*from].cy == cy && seen < kMostNeighbours;
-         ++from, ++seen) {
-      const std::size_t other = *from;
+    for (; from != end && from->cx == cx && from->cy == cy && seen < kMostNeighbours; ++from, ++seen) {
+      const std::size_t other = from->end;
       if (other / 2 == e / 2) continue;
       if (!options_.acrossLayers && curves_[other / 2].layer != curves_[e / 2].layer) continue;
       const double d = curve::distance(ends_[e].point, ends_[other].point);
       if (d > options_.tolerance) continue;
-      pairs_.push_back({d, 1.0 + curve::dot(ends_[e].outward, ends_[other].outward), std::min(e, other),
-                        std::max(e, other)});
+      const double bend = std::round(1e9 * (1.0 + curve::dot(ends_[e].outward, ends_[other].outward)));
+      pairs_.push_back({d, std::floor(d / grain), bend, std::min(e, other), std::max(e, other)});
     }
   }
 
   void joinPairs() {
     // Distances that differ by less than a hundredth of the tolerance count as equal; then the straighter
-    // pair wins.
-    const double grain = 0.01 * options_.tolerance;
-    std::sort(pairs_.begin(), pairs_.end(), [grain](const Pair& p, const Pair& q) {
-      const double dp = std::floor(p.distance / grain), dq = std::floor(q.distance / grain);
-      if (dp != dq) return dp < dq;
-      if (std::abs(p.bend - q.bend) > 1e-9) return p.bend < q.bend;
-      return p.a != q.a ? p.a < q.a : p.b < q.b;
-    });
+    // pair wins. Both are whole numbers here, so that the order is a strict one.
+    const auto key = [](const Pair& p) { return std::tuple(p.grains, p.bend, p.a, p.b); };
+    std::sort(pairs_.begin(), pairs_.end(), [&key](const Pair& p, const Pair& q) { return key(p) < key(q); });
     UnionFind places(ends_.size());
     for (const Pair& pair : pairs_) {
       places.join(pair.a, pair.b);
       if (partner_[pair.a] != kNone || partner_[pair.b] != kNone) continue;
-      partner_[pair.a] = pair.b;
-      partner_[pair.b] = pair.a;
-      report_.largestGap = std::max(report_.largestGap, pair.distance);
+      link(pair.a, pair.b);
     }
     std::vector<std::size_t> crowd(ends_.size(), 0);
     for (std::size_t e = 0; e < ends_.size(); ++e) {
@@ -181,9 +219,10 @@ class Chainer {
     }
   }
 
-  void walkAll() {
+  bool walkAll() {
     std::vector<bool> used(curves_.size(), false);
     for (std::size_t i = 0; i < curves_.size(); ++i) {
+      if (stopAt(i)) return false;
       if (!usable_[i] || used[i]) continue;
       // Backward to the first curve of an open chain, or around to i again.
       std::size_t entry = 2 * i;
@@ -206,16 +245,19 @@ class Chainer {
         if (e == kNone || e == entry) break;
       }
       const std::size_t number = report_.contours.size() + 1;
-      contour.name = contour.layer.empty() || contour.layer == "0" ? "contour " + std::to_string(number)
-                                           : contour.layer + " " + std::to_string(number);
+      contour.name = contour.layer.empty() || contour.layer == "0"
+                         ? "contour " + std::to_string(number)
+                         : contour.layer + " " + std::to_string(number);
       report_.contours.push_back(closeGaps(contour));
     }
+    return true;
   }
 
   const std::vector<LooseCurve>& curves_;
   const ChainOptions& options_;
   RunControl& control_;
   std::vector<End> ends_;
+  std::vector<double> lengths_;
   std::vector<bool> usable_;
   std::vector<std::size_t> partner_;
   std::vector<Pair> pairs_;

@@ -14,6 +14,9 @@ struct LooseCurve {
   curve::Curve curve;
   std::string layer;
   std::string source;  // kind and place in the file
+  // It goes on where the curve before it in the list ends (pieces of one polyline): the two are joined before
+  // any others are looked at, if their ends lie within the tolerance.
+  bool follows = false;
 };
 
 struct ChainOptions {
@@ -29,9 +32,9 @@ struct ChainReport {
       0;  // places where more than two ends meet; the straightest continuation is taken
 };
 
-// Joins ends that lie within the tolerance: at each place the pairs are made nearest first, and at a branch
-// the straightest continuation wins. The first curve of a contour keeps its own direction. A curve whose ends
-// meet is a closed contour of its own.
+// Joins the pieces of one entity first (see follows). Then joins ends that lie within the tolerance: at each
+// place the pairs are made nearest first, and at a branch the straightest continuation wins. The first curve
+// of a contour keeps its own direction. A curve whose ends meet is a closed contour of its own.
 //
 // Fails     invalidArgument  tolerance is not positive and finite; a curve has a value that is not finite.
 //           cancelled        by `control`.
