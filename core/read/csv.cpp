@@ -2,6 +2,7 @@
 // Lengths in the file's own unit.
 #include <algorithm>
 #include <array>
+#include <cmath>
 
 #include <fmt/format.h>
 
@@ -18,38 +19,41 @@ struct Dialect {
 };
 
 struct Columns {
-  std::size_t x = 0, y = 1;
+  std::size_t x = 0, y = 1, count = 0;  // count 0: not known yet
   std::optional<std::size_t> contour;
   std::optional<double> millimetres;  // said by a header such as x_mm
   std::string unit;
 };
 
-std::vector<std::string_view> split(std::string_view line, char separator) {
-  std::vector<std::string_view> fields;
+// With blanks as the separator, runs of them count once.
+void splitInto(std::vector<std::string_view>& fields, std::string_view line, char separator) {
+  fields.clear();
   for (;;) {
     const std::size_t end = line.find(separator);
     std::string_view field = trimmed(line.substr(0, end));
     if (field.size() >= 2 && field.front() == '"' && field.back() == '"')
       field = trimmed(field.substr(1, field.size() - 2));
-    fields.push_back(field);
-    if (end == std::string_view::npos) return fields;
+    if (separator != ' ' || !field.empty()) fields.push_back(field);
+    if (end == std::string_view::npos) return;
     line.remove_prefix(end + 1);
   }
 }
 
-// With blanks as the separator, runs of them count once.
-std::vector<std::string_view> fieldsOf(std::string_view line, const Dialect& dialect) {
-  std::vector<std::string_view> fields = split(trimmed(line), dialect.separator);
-  if (dialect.separator == ' ') std::erase_if(fields, [](std::string_view f) { return f.empty(); });
-  return fields;
+bool hasLetters(std::string_view line) {
+  return std::any_of(line.begin(), line.end(), [](char c) {
+    return (c >= 'a' && c <= 'z' && c != 'e') || (c >= 'A' && c <= 'Z' && c != 'E');
+  });
 }
 
-std::optional<double> numberIn(std::string_view field, const Dialect& dialect) {
-  if (!dialect.decimalComma || field.find(',') == std::string_view::npos) return parseNumber(field);
-  if (field.find('.') != std::string_view::npos || field.size() > 60) return std::nullopt;
-  std::string text(field);
-  std::replace(text.begin(), text.end(), ',', '.');
-  return parseNumber(text);
+// "x_mm", "X [mm]" and "x (mm)" are the same key: "x_mm".
+std::string keyOf(std::string_view field) {
+  std::string key;
+  for (char c : lowerCase(field)) {
+    if (c == ' ' || c == '[' || c == '(') c = '_';
+    if (c == ']' || c == ')' || (c == '_' && !key.empty() && key.back() == '_')) continue;
+    key += c;
+  }
+  return key;
 }
 
 class CsvReader {
@@ -67,16 +71,15 @@ class CsvReader {
         control_.report(static_cast<double>(at_) / static_cast<double>(bytes_.size()));
       }
       const std::string_view content = trimmed(line);
-      if (!content.empty() && content.front() == '#') continue;
       if (content.empty()) {
         finishContour();
         continue;
       }
-      if (auto taken = started_ ? row(content) : begin(content); !taken) return taken.error();
+      auto taken = content.front() == '#' ? comment(content) : started_ ? row(content) : begin(content);
+      if (!taken) return taken.error();
     }
     finishContour();
-    if (drawing_.curves.empty())
-      return refused(fmt::format("{} holds no two different points; give one x,y pair a line", name_));
+    if (auto whole = checkWhole(); !whole) return whole.error();
     if (columns_.millimetres) {
       drawing_.millimetresPerUnit = columns_.millimetres;
       drawing_.unitName = columns_.unit;
@@ -89,6 +92,12 @@ class CsvReader {
   Error refusedHere(std::string_view what) const {
     return refused(fmt::format("{} line {}: {}", name_, line_, what));
   }
+  Error unclear(std::string_view where) const {
+    return refused(
+        fmt::format("{}{}: it is unclear whether the comma separates or marks decimals; write decimal "
+                    "points, or separate by semicolons",
+                    name_, where));
+  }
 
   bool takeLine(std::string_view& text) {
     if (at_ >= bytes_.size()) return false;
@@ -97,6 +106,29 @@ class CsvReader {
     at_ = end + 1;
     ++line_;
     return true;
+  }
+
+  // "# points 180" says how many rows follow, so that a file that is cut short can be told.
+  Result<void> comment(std::string_view line) {
+    constexpr std::string_view word = "# points ";
+    if (line.substr(0, word.size()) != word) return {};
+    const auto count = parseInteger(line.substr(word.size()));
+    if (!count || *count < 0) return refusedHere("'# points' must be followed by the number of rows");
+    promised_ = static_cast<std::size_t>(*count);
+    return {};
+  }
+
+  Result<void> checkWhole() const {
+    if (promised_ && (rows_ != *promised_ || bytes_.back() != '\n')) {
+      return refused(fmt::format("{} ends at line {} with {} points, although it says {}; get a whole copy",
+                                 name_, line_, rows_, *promised_));
+    }
+    if (drawing_.curves.empty())
+      return refused(fmt::format("{} holds no two different points; give one x,y pair a line", name_));
+    // "0,5,1" may be three whole numbers, or two of which one has a decimal comma.
+    const bool bare = dialect_.separator == ',' && !header_ && !seenPoint_;
+    if (bare && columns_.count > 2) return unclear("");
+    return {};
   }
 
   // The first line settles the dialect, and whether it is a header.
@@ -108,83 +140,116 @@ class CsvReader {
       dialect_ = {'\t', true};
     } else if (line.find(',') != std::string_view::npos) {
       const auto commas = std::count(line.begin(), line.end(), ',');
-      const bool blanks = trimmed(line).find(' ') != std::string_view::npos;
-      const bool header = std::any_of(line.begin(), line.end(), [](char c) {
-        return (c >= 'a' && c <= 'z' && c != 'e') || (c >= 'A' && c <= 'Z' && c != 'E');
-      });
+      splitInto(fields_, line, ' ');
       // "1,5 2,5" and "1,5,2,5" can be read in more than one way.
-      if (!header && (commas == 3 || (blanks && commas == 2 && fieldsOf(line, {' ', true}).size() == 2))) {
-        return refusedHere(
-            "it is unclear whether the comma separates or marks decimals; write decimal points, or separate "
-            "by semicolons");
-      }
+      if (!hasLetters(line) &&
+          ((commas == 3 && line.find('.') == std::string_view::npos) || (commas == 2 && fields_.size() == 2)))
+        return unclear(fmt::format(" line {}", line_));
       dialect_ = {',', false};
     } else {
       dialect_ = {' ', false};
     }
-    const auto fields = fieldsOf(line, dialect_);
-    if (fields.size() >= 2 && numberIn(fields[0], dialect_) && numberIn(fields[1], dialect_))
+    splitInto(fields_, line, dialect_.separator);
+    columns_.count = fields_.size();
+    if (fields_.size() >= 2 && number(fields_[0]) && number(fields_[1])) {
+      if (columns_.count > 2)
+        note(drawing_.ignored, "column",
+             "only the first two columns are read, as x and y; give a header to choose",
+             fmt::format("line {}", line_));
       return row(line);
-    return header(fields);
+    }
+    return header();
   }
 
-  Result<void> header(const std::vector<std::string_view>& fields) {
+  Result<void> header() {
+    header_ = true;
     std::optional<std::size_t> x, y;
-    for (std::size_t i = 0; i < fields.size(); ++i) {
-      std::string key(fields[i]);
-      std::transform(key.begin(), key.end(), key.begin(),
-                     [](unsigned char c) { return static_cast<char>(c >= 'A' && c <= 'Z' ? c + 32 : c); });
+    std::string_view unitX, unitY;
+    for (std::size_t i = 0; i < fields_.size(); ++i) {
+      const std::string key = keyOf(fields_[i]);
       if (key == "contour") columns_.contour = i;
-      constexpr std::array<std::pair<std::string_view, double>, 3> kinds = {
-          {{"", 0.0}, {"_mm", 1.0}, {"_in", 25.4}}};
-      for (const auto& [ending, millimetres] : kinds) {
-        if (key == "x" + std::string(ending)) x = i;
-        if (key == "y" + std::string(ending)) y = i;
-        if (millimetres > 0.0 && key == "x" + std::string(ending)) {
-          columns_.millimetres = millimetres;
-          columns_.unit = ending.substr(1);
+      for (std::string_view unit : {"", "mm", "in"}) {
+        const std::string ending = unit.empty() ? "" : "_" + std::string(unit);
+        if (key == "x" + ending) {
+          x = i;
+          unitX = unit;
+        }
+        if (key == "y" + ending) {
+          y = i;
+          unitY = unit;
         }
       }
     }
     if (!x || !y)
       return refusedHere("the first line is neither two numbers nor a header with columns x and y");
+    if (unitX != unitY) return refusedHere("the columns x and y are in different units; convert one of them");
+    if (!unitX.empty()) columns_.millimetres = unitX == "mm" ? 1.0 : 25.4;
+    columns_.unit = unitX;
     columns_.x = *x;
     columns_.y = *y;
     return {};
   }
 
+  std::optional<double> number(std::string_view field) {
+    if (field.find('.') != std::string_view::npos) seenPoint_ = true;
+    if (!dialect_.decimalComma || field.find(',') == std::string_view::npos) return parseNumber(field);
+    seenComma_ = true;
+    if (field.find('.') != std::string_view::npos || field.size() > 60) return std::nullopt;
+    std::array<char, 60> text{};
+    std::replace_copy(field.begin(), field.end(), text.begin(), ',', '.');
+    return parseNumber({text.data(), field.size()});
+  }
+
   Result<void> row(std::string_view line) {
-    const auto fields = fieldsOf(line, dialect_);
-    if (fields.size() <= std::max(columns_.x, columns_.y)) return refusedHere("a row needs an x and a y");
-    const auto x = numberIn(fields[columns_.x], dialect_), y = numberIn(fields[columns_.y], dialect_);
+    splitInto(fields_, line, dialect_.separator);
+    if (fields_.size() <= std::max(columns_.x, columns_.y)) return refusedHere("a row needs an x and a y");
+    if (fields_.size() != columns_.count) {
+      return refusedHere(
+          fmt::format("{} columns, where the first line has {}; give each row the same, with decimal "
+                      "points where commas separate",
+                      fields_.size(), columns_.count));
+    }
+    const auto x = number(fields_[columns_.x]), y = number(fields_[columns_.y]);
     if (!x || !y) {
       return refusedHere(fmt::format("'{}' is not a number",
-                                     toUtf8((x ? fields[columns_.y] : fields[columns_.x]).substr(0, 40))));
+                                     toUtf8((x ? fields_[columns_.y] : fields_[columns_.x]).substr(0, 40))));
     }
-    if (columns_.contour && fields.size() > *columns_.contour) {
-      const std::string label(fields[*columns_.contour]);
-      if (label != label_) finishContour();
-      label_ = label;
+    if (seenComma_ && seenPoint_)
+      return refusedHere("decimal points and decimal commas are mixed; use one of them");
+    if (columns_.contour && fields_[*columns_.contour] != label_) {
+      finishContour();
+      label_ = fields_[*columns_.contour];
     }
+    ++rows_;
+    return add({*x, *y});
+  }
+
+  Result<void> add(Vec2 point) {
+    if (std::abs(point.x) > kLargestCoordinate || std::abs(point.y) > kLargestCoordinate)
+      return refusedHere("a coordinate is out of range");
     if (points_ == 0) {
-      first_ = {*x, *y};
       firstLine_ = line_;
-    } else if (Vec2{*x, *y} == last_) {
+    } else if (point == last_) {
       note(drawing_.ignored, "point", "it repeats the point before", fmt::format("line {}", line_));
     } else {
       if (drawing_.curves.size() >= options_.maxCurves)
-        return refusedHere(fmt::format("more than {} points", options_.maxCurves));
-      drawing_.curves.push_back({curve::Line{last_, {*x, *y}}, "", fmt::format("line {}", line_)});
+        return refusedHere(fmt::format("more than {} points; split the file", options_.maxCurves));
+      drawing_.curves.push_back(
+          {curve::Line{last_, point}, "", fmt::format("line {}", line_), piecesInContour_ > 0});
+      ++piecesInContour_;
     }
-    last_ = {*x, *y};
+    last_ = point;
     ++points_;
     return {};
   }
 
   void finishContour() {
     if (points_ == 1) note(drawing_.skipped, "point", "it stands alone", fmt::format("line {}", firstLine_));
-    points_ = 0;
+    points_ = piecesInContour_ = 0;
   }
+
+  // Coordinates beyond this can't be told apart to 1e-4 any more.
+  static constexpr double kLargestCoordinate = 1e12;
 
   std::string_view bytes_, name_;
   const ReadOptions& options_;
@@ -192,10 +257,12 @@ class CsvReader {
   Drawing drawing_;
   Dialect dialect_;
   Columns columns_;
-  bool started_ = false;
-  std::size_t at_ = 0, line_ = 0, points_ = 0, firstLine_ = 0;
-  std::string label_;
-  Vec2 first_, last_;
+  std::vector<std::string_view> fields_;
+  std::optional<std::size_t> promised_;
+  bool started_ = false, header_ = false, seenPoint_ = false, seenComma_ = false;
+  std::size_t at_ = 0, line_ = 0, rows_ = 0, points_ = 0, piecesInContour_ = 0, firstLine_ = 0;
+  std::string_view label_;
+  Vec2 last_;
 };
 
 }  // namespace

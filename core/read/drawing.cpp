@@ -11,6 +11,7 @@
 
 #include <fmt/format.h>
 
+#include "core/read/dxf_groups.h"
 #include "core/read/text.h"
 
 namespace kf::read {
@@ -26,6 +27,7 @@ struct Format {
 
 // A DXF text file begins with group 0 (or a comment, 999), and names a section early.
 bool looksLikeDxf(std::string_view bytes) {
+  if (isBinaryDxf(bytes)) return true;
   const std::string_view head = trimmed(bytes.substr(0, std::min<std::size_t>(bytes.find('\n'), 20)));
   return (head == "0" || head == "999") && bytes.substr(0, 65536).find("SECTION") != std::string_view::npos;
 }

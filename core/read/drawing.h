@@ -33,7 +33,8 @@ struct Drawing {
 };
 
 struct ReadOptions {
-  std::vector<std::string> layers;  // only these; empty: all that are on
+  std::vector<std::string> layers;  // only these, even if off or frozen; empty: all that are on
+  bool hatchBoundaries = false;     // boundaries of filled areas count as geometry
   std::size_t maxCurves = 4'000'000;
   std::size_t maxBytes = std::size_t{1} << 30;
 };

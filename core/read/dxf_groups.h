@@ -1,4 +1,4 @@
-// The group pairs of a DXF text file, one entity at a time; internal to read.
+// The group pairs of a DXF file, text or binary, one entity at a time; internal to read.
 // No units here.
 #pragma once
 
@@ -13,41 +13,61 @@
 
 namespace kf::read {
 
+// A group code with its value. A text file gives every value as text; a binary one gives numbers as such.
 struct Group {
+  enum class Kind : std::uint8_t { text, real, whole };
+
   int code = 0;
-  std::string_view value;
-  std::size_t line = 0;  // of the value
+  Kind kind = Kind::text;
+  bool binary = false;
+  std::string_view value;  // of text
+  double real = 0.0;       // of a binary real
+  std::int64_t whole = 0;  // of a binary whole number
+  std::size_t at = 0;      // line of the value in a text file, byte in a binary one
+
+  std::string place() const;  // "line 12" or "byte 812"
+  std::string shown() const;  // the value for a message, cut to 40 characters
 };
 
-// Reads pairs of lines: a group code, and its value. Copes with \n and \r\n.
+// Reads pairs: two lines each in a text file (\n or \r\n), a code of one or two bytes and a value of a size
+// that the code tells in a binary one. Nothing in the file decides how much is set aside.
 class GroupStream {
  public:
-  GroupStream(std::string_view bytes, std::string_view name) : bytes_(bytes), name_(name) {}
+  GroupStream(std::string_view bytes, std::string_view name);
 
   // The next pair, or empty at the end of the input. Comments (group 999) are passed over.
-  // Fails  cannotRead  a group code that is no whole number, or a code without its value.
-  Result<std::optional<Group>> next();
+  // Fails  cannotRead  a group code that is no whole number or is not known, or a code without its value.
+  Result<std::optional<Group>> next() { return binary_ ? nextBinary() : nextText(); }
 
-  std::size_t line() const { return line_; }
+  std::string place() const;
   double progress() const {
     return bytes_.empty() ? 1.0 : static_cast<double>(at_) / static_cast<double>(bytes_.size());
   }
 
  private:
   bool takeLine(std::string_view& text);
+  Result<std::optional<Group>> nextText();
+  Result<std::optional<Group>> nextBinary();
+  std::optional<std::uint64_t> takeBytes(std::size_t count);
+  bool takeValue(Group& group);
+  Error cutShort() const;
 
   std::string_view bytes_, name_;
   std::size_t at_ = 0, line_ = 0;
+  bool binary_ = false, wideCodes_ = true;
 };
+
+// True for the 22 bytes that begin a binary DXF file.
+bool isBinaryDxf(std::string_view bytes);
 
 // All groups of one record: the pairs from one group 0 to the next.
 struct Record {
-  std::string_view type;
-  std::size_t line = 0;
+  Group head;             // the group 0
+  std::string_view type;  // its value without blanks
   std::vector<Group> groups;
 
   const Group* find(int code) const;
-  std::string place() const;  // "line 12"
+  std::string place() const { return head.place(); }
 };
 
 // A number of a record; `fallback` when it has no such group.
@@ -55,5 +75,6 @@ struct Record {
 Result<double> number(const Record& record, int code, double fallback, std::string_view name);
 Result<long long> integer(const Record& record, int code, long long fallback, std::string_view name);
 Result<double> numberOf(const Group& group, std::string_view name);
+Result<long long> integerOf(const Group& group, std::string_view name);
 
 }  // namespace kf::read

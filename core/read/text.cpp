@@ -5,6 +5,8 @@
 #include <algorithm>
 #include <array>
 
+#include <iconv.h>
+
 #include <fmt/format.h>
 
 namespace kf::read {
@@ -53,7 +55,68 @@ constexpr std::array<unsigned, 32> kWindows1252 = {
     0x2039, 0x0152, 0x8D,   0x017D, 0x8F,   0x90,   0x2018, 0x2019, 0x201C, 0x201D, 0x2022,
     0x2013, 0x2014, 0x02DC, 0x2122, 0x0161, 0x203A, 0x0153, 0x9D,   0x017E, 0x0178};
 
+constexpr std::size_t kMostRows = 1000;
+
+// "ANSI_1251" -> "CP1251", "DOS850" -> "CP850", "ISO8859-2" as it is.
+std::string iconvName(std::string_view codePage) {
+  const std::string name = lowerCase(trimmed(codePage));
+  const std::size_t digits = name.find_first_of("0123456789");
+  if (digits == std::string::npos || name.substr(0, 3) == "iso") return name;
+  const std::string number = name.substr(digits);
+  if (number == "949") return "UHC";
+  if (number == "950") return "BIG5";
+  if (number == "1361") return "JOHAB";
+  return "CP" + number;
+}
+
+std::optional<std::string> byCodePage(std::string_view bytes, std::string_view codePage) {
+  if (codePage.empty() || codePage.size() > 40) return std::nullopt;
+  const iconv_t converter = iconv_open("UTF-8", iconvName(codePage).c_str());
+  if (converter == reinterpret_cast<iconv_t>(-1)) return std::nullopt;  // what iconv_open returns on failure
+  std::string in(bytes), out(4 * bytes.size() + 16, '\0');
+  char *from = in.data(), *to = out.data();
+  std::size_t left = in.size(), room = out.size();
+  const bool ok = iconv(converter, &from, &left, &to, &room) != static_cast<std::size_t>(-1) && left == 0;
+  iconv_close(converter);
+  if (!ok) return std::nullopt;
+  out.resize(out.size() - room);
+  return out;
+}
+
+// \U+00E9 stands for one character of the basic plane. Source: the public DXF reference.
+std::string withoutEscapes(std::string text) {
+  std::size_t at = text.find("\\U+");
+  while (at != std::string::npos) {
+    unsigned code = 0;
+    const char* first = text.data() + at + 3;
+    const char* last = text.data() + std::min(at + 7, text.size());
+    const auto [end, failure] = std::from_chars(first, last, code, 16);
+    const bool surrogate = code >= 0xD800 && code < 0xE000;
+    if (failure == std::errc() && end == first + 4 && code >= 0x20 && !surrogate) {
+      std::string one;
+      appendUtf8(one, code);
+      text.replace(at, 7, one);
+    }
+    at = text.find("\\U+", at + 1);
+  }
+  return text;
+}
+
 }  // namespace
+
+std::string lowerCase(std::string_view text) {
+  std::string lower(text);
+  for (char& c : lower) {
+    if (c >= 'A' && c <= 'Z') c = static_cast<char>(c + 32);
+  }
+  return lower;
+}
+
+std::string decoded(std::string_view bytes, std::string_view codePage) {
+  if (isUtf8(bytes)) return withoutEscapes(std::string(bytes));
+  if (auto text = byCodePage(bytes, codePage)) return withoutEscapes(std::move(*text));
+  return withoutEscapes(toUtf8(bytes));
+}
 
 std::string_view trimmed(std::string_view text) {
   while (!text.empty() && (text.front() == ' ' || text.front() == '\t' || text.front() == '\r'))
@@ -103,6 +166,8 @@ void note(std::vector<Skipped>& list, std::string_view kind, std::string_view re
   const auto row = std::find_if(list.begin(), list.end(), same);
   if (row != list.end()) {
     ++row->count;
+  } else if (list.size() >= kMostRows && kind != "other") {
+    note(list, "other", "further kinds and reasons", place);
   } else {
     list.push_back({std::string(kind), std::string(reason), 1, std::string(place)});
   }

@@ -22,7 +22,14 @@ std::optional<long long> parseInteger(std::string_view text);
 // `bytes` when they are UTF-8, else read as Windows-1252.
 std::string toUtf8(std::string_view bytes);
 
-// Adds one entity to the row of its kind and reason.
+// `bytes` as text: UTF-8 when they are that, else by the code page that a drawing names ("ANSI_1251"), else
+// as Windows-1252. Escapes of the form \U+00E9 are resolved.
+std::string decoded(std::string_view bytes, std::string_view codePage);
+
+// Capital ASCII letters made small; other bytes as they are.
+std::string lowerCase(std::string_view text);
+
+// Adds one entity to the row of its kind and reason. Past a thousand rows, kinds count as "other".
 void note(std::vector<Skipped>& list, std::string_view kind, std::string_view reason, std::string_view place);
 
 // "3 HATCH (reason), 1 TEXT (reason)"

@@ -154,6 +154,7 @@ def centreboard_points():
     xs = [0.5 * (1 - math.cos(math.pi * i / 90)) for i in range(91)]
     loop = [(300 * x, section(x)) for x in reversed(xs)] + [(300 * x, -section(x)) for x in xs[1:]]
     loop[-1] = loop[0]
+    rows.insert(1, f"# points {len(loop)}")
     rows += [f"{x:.4f},{y:.4f}" for x, y in loop]
     (OUT / "centreboard_points.csv").write_text("\n".join(rows) + "\n")
 
