@@ -93,7 +93,7 @@ TEST_F(Window, ShowsEveryContourWithItsTime) {
   EXPECT_GT(document.totalTime(), 1.0);
   EXPECT_LE(document.totalLowerBound(), document.totalTime());
   EXPECT_TRUE(window.findChild<QLabel*>("totalTime")->text().endsWith(" s"));
-  EXPECT_EQ(window.findChild<ContourTable*>()->rowCount(), 8);
+  EXPECT_EQ(window.findChild<ContourTable*>()->model()->rowCount(), 8);
 }
 
 TEST_F(Window, ReplansAtOnceWhenALimitChangesAndUndoesIt) {
@@ -139,9 +139,9 @@ TEST_F(Window, SwitchesALimitOffAndOnAgain) {
 
 TEST_F(Window, ShowsATightSpotInCanvasAndPlot) {
   open(sample("gasket.dxf"));
-  ASSERT_GT(window.spots().rowCount(), 0);
+  ASSERT_GT(window.spots().spots().rowCount(), 0);
   const double wholeWidth = window.plot().rangeHigh() - window.plot().rangeLow();
-  const QRect cell = window.spots().visualItemRect(window.spots().item(0, 1));
+  const QRect cell = window.spots().visualRect(window.spots().spots().index(0, 1));
   QTest::mouseClick(window.spots().viewport(), Qt::LeftButton, {}, cell.center());
   const pipeline::TightSpot& spot = document.plan()->tightSpots.front();
   ASSERT_TRUE(document.cursor());
@@ -152,7 +152,7 @@ TEST_F(Window, ShowsATightSpotInCanvasAndPlot) {
   EXPECT_LT(window.plot().rangeHigh() - window.plot().rangeLow(), wholeWidth);
   EXPECT_LE(window.plot().rangeLow(), spot.s);
   EXPECT_GE(window.plot().rangeHigh(), spot.s);
-  EXPECT_TRUE(window.readout().text().contains("limited by"));
+  EXPECT_TRUE(window.readout().text().contains("Limited by"));
 }
 
 TEST_F(Window, LinksThePointerOnTheCanvasToTheCursor) {
@@ -264,7 +264,7 @@ TEST_F(Window, ExportsPointsAfterTheCautionsAndTheyReadBack) {
     press(caution, "accept");
   });
   QTest::keyClick(&window, Qt::Key_E, Qt::ControlModifier);
-  ASSERT_EQ(exported.count(), 1);
+  ASSERT_TRUE(!exported.isEmpty() || exported.wait(20'000));
   RunControl control;
   const auto read = read::readDrawing(path.toStdString(), {}, control);
   ASSERT_TRUE(read) << read.error().message;
@@ -278,7 +278,7 @@ TEST_F(Window, ExportsPointsAfterTheCautionsAndTheyReadBack) {
 TEST_F(Window, PlaysAlongThePathInTime) {
   open(sample("gasket.dxf"));
   QSignalSpy moved(&document, &Document::cursorChanged);
-  QTest::keyClick(&window, Qt::Key_Space);
+  QTest::keyClick(&window, Qt::Key_F5);
   ASSERT_TRUE(moved.wait(5'000));
   const double early = document.cursor().value_or(-1.0);
   ASSERT_TRUE(moved.wait(5'000));

@@ -25,11 +25,16 @@ Canvas::Canvas(Document& document, QWidget* parent) : QWidget(parent), document_
   setMinimumSize(260, 180);
   setAccessibleName(tr("Drawing"));
   setToolTip({});
-  connect(&document_, &Document::opened, this, &Canvas::fit);
+  connect(&document_, &Document::opened, this, [this] {
+    traceWanted();
+    fit();
+  });
+  connect(&document_, &Document::opening, this, &Canvas::refresh);
   for (auto signal : {&Document::plansChanged, &Document::chosenChanged, &Document::unitsChanged,
-                      &Document::colouringChanged}) {
+                      &Document::colouringChanged, &Document::stretchChanged}) {
     connect(&document_, signal, this, &Canvas::refresh);
   }
+  connect(&document_, &Document::failed, this, &Canvas::refresh);
   connect(&document_, &Document::cursorChanged, this, qOverload<>(&QWidget::update));
   connect(&document_, &Document::placeShown, this, &Canvas::showPlace);
 }
@@ -56,10 +61,33 @@ QPointF Canvas::toScreen(double x, double y) const {
   return {0.5 * width() + (x - centre_.x()) * scale_, 0.5 * height() - (y - centre_.y()) * scale_};
 }
 
+QPointF Canvas::toDrawing(QPointF screen) const {
+  return {centre_.x() + (screen.x() - 0.5 * width()) / scale_,
+          centre_.y() - (screen.y() - 0.5 * height()) / scale_};
+}
+
+// The drawing's own contours as polylines, for the times when the tool runs beside them.
+void Canvas::traceWanted() {
+  wanted_.clear();
+  const int points = document_.drawing()->contours.size() > 200 ? 8 : 32;
+  for (const contour::Contour& contour : document_.drawing()->contours) {
+    QPolygonF line;
+    for (const contour::Segment& segment : contour.segments) {
+      const double from = segment.curve.first(), to = segment.curve.last();
+      const int steps = segment.curve.asLine() != nullptr ? 1 : points;
+      for (int i = line.isEmpty() ? 0 : 1; i <= steps; ++i) {
+        const curve::Vec2 p = segment.curve.point(from + (to - from) * i / steps);
+        line << QPointF(p.x, p.y);
+      }
+    }
+    wanted_.push_back(line);
+  }
+}
+
 void Canvas::zoomBy(double factor, QPointF at) {
   const double next = std::clamp(scale_ * factor, kLeastScale, kMostScale);
   const QPointF offset(at.x() - 0.5 * width(), 0.5 * height() - at.y());
-  centre_ += offset / scale_ - offset / next;
+  centre_ += offset / scale_ - offset / next;  // the place under the pointer stays there
   scale_ = next;
   fitted_ = false;
   refresh();
@@ -95,6 +123,8 @@ void Canvas::mousePressEvent(QMouseEvent* event) {
 }
 
 void Canvas::mouseMoveEvent(QMouseEvent* event) {
+  pointer_ = event->position();
+  update();
   if (dragging_) {
     const QPointF by = event->position() - lastMouse_;
     if (!moved_ && by.manhattanLength() < 4) return;
@@ -128,7 +158,10 @@ void Canvas::mouseDoubleClickEvent(QMouseEvent* /*event*/) {
   fit();
 }
 
-void Canvas::leaveEvent(QEvent* /*event*/) {}
+void Canvas::leaveEvent(QEvent* /*event*/) {
+  pointer_.reset();
+  update();
+}
 
 void Canvas::keyPressEvent(QKeyEvent* event) {
   const auto* prepared = document_.preparedAt(document_.chosen());
@@ -164,8 +197,7 @@ Canvas::Near Canvas::nearestOn(int index, QPointF at) const {
   if (prepared == nullptr) return near;
   const path::Path& path = *prepared->path;
   double best = 1e300;
-  const double mx = centre_.x() + (at.x() - 0.5 * width()) / scale_,
-               my = centre_.y() - (at.y() - 0.5 * height()) / scale_;
+  const double mx = toDrawing(at).x(), my = toDrawing(at).y();
   for (std::size_t i = 0; i + 1 < path.size(); ++i) {
     const double dx = path.x[i + 1] - path.x[i], dy = path.y[i + 1] - path.y[i], n = dx * dx + dy * dy;
     const double part =

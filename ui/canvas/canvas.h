@@ -4,7 +4,7 @@
 
 #include <QPixmap>
 #include <QPointF>
-#include <QTransform>
+#include <QPolygonF>
 #include <QWidget>
 #include <optional>
 #include <vector>
@@ -26,6 +26,14 @@ class Canvas : public QWidget {
   // Brings the stretch of the chosen contour around s into view.
   void showPlace(double s, double halfWidth);
   QPointF toScreen(double x, double y) const;
+  QPointF toDrawing(QPointF screen) const;
+
+  // What the ends of the colour scale stand for; `cut`: larger values take its end's colour.
+  struct ScaleRange {
+    double low = 0.0, high = 1.0;
+    bool cut = false;
+  };
+
   QSize sizeHint() const override { return {700, 420}; }
 
  protected:
@@ -48,12 +56,18 @@ class Canvas : public QWidget {
 
   void refresh();
   void render();
+  void traceWanted();
+  void drawWanted(QPainter& painter) const;
+  void drawHalo(QPainter& painter) const;
   void drawContour(QPainter& painter, int index) const;
   void drawColoured(QPainter& painter, int index) const;
   void drawGrid(QPainter& painter) const;
   void drawScaleBar(QPainter& painter) const;
   void drawLegend(QPainter& painter) const;
+  void drawLimitLegend(QPainter& painter) const;
   void drawMarks(QPainter& painter) const;
+  void drawUncut(QPainter& painter) const;
+  void drawSpots(QPainter& painter, const path::Path& path) const;
   void drawCursor(QPainter& painter) const;
   void drawEmpty(QPainter& painter) const;
   // The place of a contour nearest to a screen point.
@@ -65,6 +79,9 @@ class Canvas : public QWidget {
   double scale_ = 1.0;    // pixels a mm
   QPointF centre_{0, 0};  // mm, in the middle of the widget
   QPointF lastMouse_;
+  std::optional<QPointF> pointer_;
+  ScaleRange range_;
+  std::vector<QPolygonF> wanted_;  // the drawing's contours, mm
 };
 
 }  // namespace kf::ui

@@ -3,7 +3,6 @@
 #include "ui/models/document.h"
 
 #include <algorithm>
-#include <map>
 
 #include "core/write/file_writer.h"
 #include "ui/edits/swap_edit.h"
@@ -11,8 +10,10 @@
 namespace kf::ui {
 namespace {
 
-// Up to so many nodes a plan is made at once, within a few milliseconds; above, in the background.
+// Up to so many nodes an acceleration-limited plan is made at once, within a few milliseconds; above, in the
+// background.
 constexpr std::size_t kNodesAtOnce = 40'000;
+constexpr qint64 kPatience = 1000;  // ms; a background plan that takes longer is given up for a newer one
 
 QString text(const std::string& s) {
   return QString::fromStdString(s);
@@ -30,100 +31,51 @@ limits::Limits startingLimits() {
   return limits;
 }
 
-Result<Document::Plans> planAll(const std::vector<pipeline::PreparedContour>& prepared,
-                                const limits::Limits& limits, RunControl& control) {
-  Document::Plans plans;
-  for (const pipeline::PreparedContour& one : prepared) {
-    auto planned = pipeline::planContour(one, limits, {}, false, control);
-    if (!planned) return planned.error();
-    plans.push_back(std::make_shared<const pipeline::PlannedContour>(std::move(*planned)));
-  }
-  return plans;
-}
-
-// Many contours share the nodes, so that a large drawing stays live.
-Result<std::vector<pipeline::PreparedContour>> prepareAll(const pipeline::OpenedDrawing& drawing,
-                                                          const limits::Limits& limits, RunControl& control) {
-  pipeline::PlanOptions planning;
-  planning.targetNodes =
-      std::max<std::size_t>(100, std::min<std::size_t>(2000, kNodesAtOnce / drawing.contours.size()));
-  std::vector<pipeline::PreparedContour> all;
-  int number = 0;
-  for (const contour::Contour& contour : drawing.contours) {
-    auto driven = pipeline::prepareDriven(contour, ++number, limits, planning, control);
-    if (!driven) return driven.error();
-    for (pipeline::PreparedContour& one : *driven) all.push_back(std::move(one));
-  }
-  pipeline::numberParts(all, number);
-  return all;
-}
-
-// Whether the driven path is another one under the other limits.
-bool drivesAlike(const limits::Limits& a, const limits::Limits& b) {
-  return a.pathTolerance == b.pathTolerance && a.toolDiameter == b.toolDiameter && a.side == b.side;
-}
-
-Result<std::vector<plan::Price>> priceAll(const std::vector<pipeline::PreparedContour>& prepared,
-                                          const limits::Limits& limits, RunControl& control) {
-  std::map<LimitName, double> saved;
-  for (const pipeline::PreparedContour& one : prepared) {
-    auto prices = plan::prices(*one.path, limits, {}, 10.0, control);
-    if (!prices) return prices.error();
-    for (const plan::Price& price : *prices) saved[price.limit] += price.timeSaved;
-  }
-  std::vector<plan::Price> list;
-  for (const auto& [name, seconds] : saved) list.push_back({name, 10.0, seconds});
-  std::stable_sort(list.begin(), list.end(),
-                   [](const plan::Price& a, const plan::Price& b) { return a.timeSaved > b.timeSaved; });
-  return list;
-}
-
 }  // namespace
 
-Document::Document(QObject* parent) : QObject(parent), limits_(startingLimits()) {}
+Document::Document(QObject* parent)
+    : QObject(parent), limits_(startingLimits()), savedLimits_(startingLimits()) {}
 Document::~Document() = default;
 
 void Document::open(const QString& path, const pipeline::OpenOptions& options) {
   emit opening(path);
-  const std::string file = path.toStdString();
-  opener_.start(
-      [file, options, limits = limits_](RunControl& control) -> Result<Opening> {
-        auto drawing = pipeline::openDrawing(file, options, control);
-        if (!drawing) return drawing.error();
-        Opening result;
-        result.drawing = std::make_shared<const pipeline::OpenedDrawing>(std::move(*drawing));
-        auto prepared = prepareAll(*result.drawing, limits, control);
-        if (!prepared) return prepared.error();
-        result.prepared = std::move(*prepared);
-        result.preparedFor = limits;
-        return result;
-      },
-      [this, path, options](Result<Opening> result) { takeOpened(path, options, std::move(result)); });
+  opener_.start([file = path.toStdString(), options, limits = limits_, choices = choices_](
+                    RunControl& control) { return openAll(file, options, limits, choices, control); },
+                [this, path, options, limits = limits_, choices = choices_](Result<Opened> result) {
+                  if (result) {
+                    preparedFor_ = limits;
+                    preparedChoices_ = choices;
+                  }
+                  takeOpened(path, options, std::move(result));
+                });
 }
 
 void Document::cancelOpening() {
   opener_.cancel();
 }
 
-void Document::takeOpened(const QString& path, const pipeline::OpenOptions& options, Result<Opening> result) {
+void Document::takeOpened(const QString& path, const pipeline::OpenOptions& options, Result<Opened> result) {
   if (!result) {
-    if (result.error().code == ErrorCode::cancelled) return;
-    if (result.error().code == ErrorCode::needsUnit) {
-      emit openNeedsUnits(path, options);
-      return;
+    switch (result.error().code) {
+      case ErrorCode::cancelled:
+        return;
+      case ErrorCode::needsUnit:
+        emit openNeedsUnits(path, options);
+        return;
+      case ErrorCode::needsConsent:
+        emit openNeedsSkipping(path, options, text(result.error().message));
+        return;
+      default:
+        emit failed(text(result.error().message));
+        return;
     }
-    if (result.error().code == ErrorCode::needsConsent) {
-      emit openNeedsSkipping(path, options, text(result.error().message));
-      return;
-    }
-    emit failed(text(result.error().message));
-    return;
   }
   drawing_ = result->drawing;
   prepared_ = std::move(result->prepared);
-  preparedFor_ = result->preparedFor;
+  choices_.jointChoices.clear();  // they belong to the drawing before
   chosen_ = 0;
   cursor_.reset();
+  stretch_.reset();
   reference_.clear();
   plans_.assign(prepared_.size(), nullptr);
   undo_.clear();
@@ -131,7 +83,14 @@ void Document::takeOpened(const QString& path, const pipeline::OpenOptions& opti
   emit chosenChanged();
   emit referenceChanged();
   emit cursorChanged();
+  emit choicesChanged();
   replan();
+}
+
+void Document::pushLimits(const QString& what, const QString& key, const limits::Limits& changed) {
+  if (changed == limits_) return;
+  undo_.push(new SwapEdit<limits::Limits>(what, key, limits_, changed,
+                                          [this](const limits::Limits& l) { applyLimits(l); }));
 }
 
 void Document::applyLimits(const limits::Limits& limits) {
@@ -142,8 +101,8 @@ void Document::applyLimits(const limits::Limits& limits) {
 
 void Document::setLimits(const limits::Limits& limits, const QString& path) {
   limitsPath_ = path;
-  undo_.push(new SwapEdit<limits::Limits>(tr("open limits"), {}, limits_, limits,
-                                          [this](const limits::Limits& l) { applyLimits(l); }));
+  savedLimits_ = limits;
+  pushLimits(tr("open limits"), {}, limits);
 }
 
 void Document::setField(const limits::Field& field, std::optional<double> value) {
@@ -153,8 +112,25 @@ void Document::setField(const limits::Field& field, std::optional<double> value)
   field.put(changed, value);
   const QString label = QString::fromUtf8(field.label.data(), static_cast<qsizetype>(field.label.size()));
   const QString key = QString::fromUtf8(field.name.data(), static_cast<qsizetype>(field.name.size()));
-  undo_.push(new SwapEdit<limits::Limits>(tr("change %1").arg(label), key, limits_, changed,
-                                          [this](const limits::Limits& l) { applyLimits(l); }));
+  pushLimits(tr("change %1").arg(label), key + u'#' + QString::number(gesture_), changed);
+}
+
+void Document::setSide(limits::Side side) {
+  limits::Limits changed = limits_;
+  changed.side = side;
+  pushLimits(tr("change tool side"), {}, changed);
+}
+
+void Document::setLimitsName(const QString& name) {
+  limits::Limits changed = limits_;
+  changed.name = name.toStdString();
+  pushLimits(tr("rename limits"), {}, changed);
+}
+
+void Document::confirmLimitsAreMine() {
+  limits::Limits changed = limits_;
+  changed.example = false;
+  pushLimits(tr("take limits as own"), {}, changed);
 }
 
 bool Document::loadLimits(const QString& path) {
@@ -173,8 +149,48 @@ bool Document::saveLimits(const QString& path) {
     return false;
   }
   limitsPath_ = path;
+  savedLimits_ = limits_;
   emit limitsChanged();
   return true;
+}
+
+void Document::pushChoices(const QString& what, const pipeline::PlanOptions& changed) {
+  undo_.push(new SwapEdit<pipeline::PlanOptions>(what, {}, choices_, changed,
+                                                 [this](const pipeline::PlanOptions& c) {
+                                                   choices_ = c;
+                                                   emit choicesChanged();
+                                                   replan();
+                                                 }));
+}
+
+void Document::setLaw(std::optional<plan::Law> law) {
+  if (law == choices_.law) return;
+  pipeline::PlanOptions changed = choices_;
+  changed.law = law;
+  pushChoices(tr("change what is planned for"), changed);
+}
+
+void Document::setJoints(plan::Joints joints) {
+  if (joints == choices_.joints) return;
+  pipeline::PlanOptions changed = choices_;
+  changed.joints = joints;
+  pushChoices(tr("change corners"), changed);
+}
+
+void Document::setJointBlended(int contourNumber, std::size_t before, bool blend) {
+  pipeline::PlanOptions changed = choices_;
+  auto& list = changed.jointChoices[contourNumber];
+  const auto at = std::find_if(list.begin(), list.end(),
+                               [before](const construct::JointChoice& c) { return c.before == before; });
+  if (blend) {
+    if (at == list.end()) return;
+    list.erase(at);  // blending is what happens without a choice
+    if (list.empty()) changed.jointChoices.erase(contourNumber);
+  } else {
+    if (at != list.end()) return;
+    list.push_back({before, false, std::nullopt});
+  }
+  pushChoices(blend ? tr("blend joint") : tr("keep joint exact"), changed);
 }
 
 void Document::choose(int index) {
@@ -183,6 +199,7 @@ void Document::choose(int index) {
                                [this](const int& i) {
                                  chosen_ = std::min(i, std::max(0, contourCount() - 1));
                                  cursor_.reset();
+                                 stretch_.reset();
                                  emit chosenChanged();
                                  emit cursorChanged();
                                }));
@@ -211,63 +228,87 @@ double Document::totalLowerBound() const {
 }
 
 void Document::replan() {
-  preparer_.cancel();
-  planner_.cancel();
   pricer_.cancel();
   prices_.clear();
   if (prepared_.empty()) {
     emit pricesChanged();
     return;
   }
-  if (!drivesAlike(limits_, preparedFor_)) {
+  if (!drivesAlike(limits_, choices_, preparedFor_, preparedChoices_)) {
+    planner_.cancel();
     prepareAgain();
     return;
   }
+  preparer_.cancel();
   std::size_t nodes = 0;
   for (const pipeline::PreparedContour& one : prepared_) nodes += one.path->size();
-  if (nodes <= kNodesAtOnce) {
-    RunControl control;
-    takePlans(planAll(prepared_, limits_, control));
-  } else {
-    planner_.start([prepared = prepared_,
-                    limits = limits_](RunControl& control) { return planAll(prepared, limits, control); },
-                   [this](Result<Plans> plans) { takePlans(std::move(plans)); });
+  if (nodes > kNodesAtOnce || law() == plan::Law::jerk) {
+    planInBackground();
+    return;
   }
+  planner_.cancel();
+  RunControl control;
+  takePlans(planAll(prepared_, limits_, choices_, control));
 }
 
-// Another tolerance or tool: the path itself changes, which takes longer than a plan does.
+// A plan under way is shown before the next one starts, so that a drag shows something; unless it takes long.
+void Document::planInBackground() {
+  if (planner_.isBusy() && planClock_.elapsed() < kPatience) {
+    planAgain_ = true;
+    return;
+  }
+  planAgain_ = false;
+  planClock_.start();
+  planner_.start([prepared = prepared_, limits = limits_, choices = choices_](
+                     RunControl& control) { return planAll(prepared, limits, choices, control); },
+                 [this](Result<Planned> planned) {
+                   const bool again = planAgain_;
+                   takePlans(std::move(planned));
+                   if (again) replan();
+                 });
+  emit planningChanged();
+}
+
+// Another tolerance, tool or joint: the path itself changes, which takes longer than a plan does.
 void Document::prepareAgain() {
-  preparer_.start([drawing = drawing_,
-                   limits = limits_](RunControl& control) { return prepareAll(*drawing, limits, control); },
-                  [this, limits = limits_](Result<std::vector<pipeline::PreparedContour>> prepared) {
-                    preparedFor_ = limits;
-                    if (!prepared) {
-                      takePlans(prepared.error());
-                      return;
-                    }
-                    prepared_ = std::move(*prepared);
-                    plans_.assign(prepared_.size(), nullptr);
-                    chosen_ = std::min(chosen_, std::max(0, contourCount() - 1));
-                    replan();
-                  });
+  preparer_.start(
+      [drawing = drawing_, limits = limits_, choices = choices_](RunControl& control) {
+        return prepareAll(*drawing, limits, choices, control);
+      },
+      [this, limits = limits_, choices = choices_](Result<std::vector<pipeline::PreparedContour>> prepared) {
+        preparedFor_ = limits;
+        preparedChoices_ = choices;
+        if (!prepared) {
+          takePlans(prepared.error());
+          return;
+        }
+        prepared_ = std::move(*prepared);
+        plans_.assign(prepared_.size(), nullptr);
+        chosen_ = std::min(chosen_, std::max(0, contourCount() - 1));
+        if (cursor_) cursor_ = std::min(*cursor_, preparedAt(chosen_)->path->length);
+        replan();
+      });
+  emit planningChanged();
 }
 
-void Document::takePlans(Result<Plans> plans) {
-  if (!plans) {
-    planError_ = text(plans.error().message);
-    plans_.assign(prepared_.size(), nullptr);
+void Document::takePlans(Result<Planned> planned) {
+  const bool usable = planned.ok();
+  if (usable) {
+    planError_ = planned->problem;
+    plans_ = std::move(planned->plans);
   } else {
-    planError_.clear();
-    plans_ = std::move(*plans);
+    planError_ = text(planned.error().message);
+    plans_.assign(prepared_.size(), nullptr);
   }
+  emit planningChanged();
   emit plansChanged();
   emit pricesChanged();
-  if (plans) startPrices();
+  if (usable && planError_.isEmpty()) startPrices();
 }
 
 void Document::startPrices() {
-  pricer_.start([prepared = prepared_,
-                 limits = limits_](RunControl& control) { return priceAll(prepared, limits, control); },
+  pricer_.start([prepared = prepared_, limits = limits_, choices = choices_](
+                    RunControl& control) { return priceAll(prepared, limits, choices, control); },
                 [this](Result<std::vector<plan::Price>> prices) {
                   if (!prices) return;
                   prices_ = std::move(*prices);
@@ -296,6 +337,12 @@ void Document::setCursor(std::optional<double> s) {
 void Document::showPlace(double s, double halfWidth) {
   setCursor(s);
   emit placeShown(s, halfWidth);
+}
+
+void Document::setStretch(std::optional<std::pair<double, double>> stretch) {
+  if (stretch == stretch_) return;
+  stretch_ = stretch;
+  emit stretchChanged();
 }
 
 void Document::setUnits(Units units) {

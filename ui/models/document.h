@@ -2,16 +2,19 @@
 // mm, s inside; units only for display.
 #pragma once
 
+#include <QElapsedTimer>
 #include <QObject>
 #include <QString>
 #include <QUndoStack>
 #include <memory>
 #include <optional>
+#include <utility>
 #include <vector>
 
 #include "core/limits/limits.h"
 #include "core/pipeline/pipeline.h"
 #include "ui/format/units.h"
+#include "ui/models/planning.h"
 #include "ui/run/runner.h"
 
 namespace kf::ui {
@@ -25,7 +28,7 @@ class Document : public QObject {
 
  public:
   using DrawingPtr = std::shared_ptr<const pipeline::OpenedDrawing>;
-  using Plans = std::vector<std::shared_ptr<const pipeline::PlannedContour>>;
+  using Plans = std::vector<PlanPtr>;
 
   explicit Document(QObject* parent = nullptr);
   ~Document() override;
@@ -43,10 +46,24 @@ class Document : public QObject {
   QString limitsPath() const { return limitsPath_; }
   // Replaces all limits at once (a file was opened); undoable.
   void setLimits(const limits::Limits& limits, const QString& path);
-  // Changes one field, in the file's unit; undoable, and drags merge.
+  // Changes one field, in the file's unit; undoable. Changes of one field merge until endGesture().
   void setField(const limits::Field& field, std::optional<double> value);
-  bool loadLimits(const QString& path);  // false: failed() was emitted
-  bool saveLimits(const QString& path);
+  void endGesture() { ++gesture_; }
+  void setSide(limits::Side side);          // undoable
+  void setLimitsName(const QString& name);  // undoable
+  void confirmLimitsAreMine();              // no example any more; undoable
+  bool loadLimits(const QString& path);     // false: failed() was emitted
+  bool saveLimits(const QString& path);     // false: failed() was emitted
+  bool limitsAreSaved() const { return limits_ == savedLimits_; }
+
+  // How the path is driven and timed. All undoable.
+  const pipeline::PlanOptions& choices() const { return choices_; }
+  void setLaw(std::optional<plan::Law> law);
+  void setJoints(plan::Joints joints);
+  // `before` as in construct::JointReport; by the drawing's contour number.
+  void setJointBlended(int contourNumber, std::size_t before, bool blend);
+  // The law that the shown plans follow.
+  plan::Law law() const { return pipeline::lawFor(limits_, choices_); }
 
   int contourCount() const { return static_cast<int>(plans_.size()); }
   int chosen() const { return chosen_; }
@@ -54,10 +71,15 @@ class Document : public QObject {
   const pipeline::PlannedContour* plan() const { return planAt(chosen_); }
   // Null while a contour has no plan (the limits allow none, or it is still being worked out).
   const pipeline::PlannedContour* planAt(int index) const;
+  PlanPtr planPtr(int index) const {
+    return planAt(index) == nullptr ? nullptr : plans_[static_cast<std::size_t>(index)];
+  }
   const pipeline::PreparedContour* preparedAt(int index) const;
   double totalTime() const;
   double totalLowerBound() const;
   QString planError() const { return planError_; }
+  // Paths or plans are being worked out; what is shown belongs to the values before.
+  bool isPlanning() const { return preparer_.isBusy() || planner_.isBusy(); }
 
   // What +10 % of each limit saves over all contours; empty while unknown.
   const std::vector<plan::Price>& prices() const { return prices_; }
@@ -72,6 +94,9 @@ class Document : public QObject {
   void setCursor(std::optional<double> s);
   // Moves the cursor and asks canvas and plot to bring the place into view.
   void showPlace(double s, double halfWidth);
+  // The stretch of the chosen contour that the plot shows, as arc lengths; empty when it shows all of it.
+  std::optional<std::pair<double, double>> stretch() const { return stretch_; }
+  void setStretch(std::optional<std::pair<double, double>> stretch);
 
   Units units() const { return units_; }
   void setUnits(Units units);
@@ -97,37 +122,43 @@ class Document : public QObject {
   void unitsChanged();
   void colouringChanged();
   void referenceChanged();
+  void choicesChanged();
+  void planningChanged();
+  void stretchChanged();
 
  private:
-  struct Opening {
-    DrawingPtr drawing;
-    std::vector<pipeline::PreparedContour> prepared;
-    limits::Limits preparedFor;
-  };
-
-  void takeOpened(const QString& path, const pipeline::OpenOptions& options, Result<Opening> result);
+  void takeOpened(const QString& path, const pipeline::OpenOptions& options, Result<Opened> result);
+  void pushLimits(const QString& text, const QString& key, const limits::Limits& changed);
+  void pushChoices(const QString& text, const pipeline::PlanOptions& changed);
   void applyLimits(const limits::Limits& limits);
   void replan();
   void prepareAgain();
-  void takePlans(Result<Plans> plans);
+  void planInBackground();
+  void takePlans(Result<Planned> planned);
   void startPrices();
 
   DrawingPtr drawing_;
   std::vector<pipeline::PreparedContour> prepared_;
-  limits::Limits preparedFor_;  // the limits that prepared_ was made for
-  limits::Limits limits_;
+  limits::Limits preparedFor_;  // the limits and choices that prepared_ was made for
+  pipeline::PlanOptions preparedChoices_;
+  limits::Limits limits_, savedLimits_;
+  pipeline::PlanOptions choices_;
   QString limitsPath_;
   Plans plans_, reference_;
   QString planError_;
   std::vector<plan::Price> prices_;
   int chosen_ = 0;
   std::optional<double> cursor_;
+  std::optional<std::pair<double, double>> stretch_;
+  std::size_t gesture_ = 0;
+  bool planAgain_ = false;  // limits changed while a plan was being made
+  QElapsedTimer planClock_;
   Units units_ = Units::mm;
   Colouring colouring_ = Colouring::speed;
   QUndoStack undo_;
-  Runner<Opening> opener_;
+  Runner<Opened> opener_;
   Runner<std::vector<pipeline::PreparedContour>> preparer_;
-  Runner<Plans> planner_;
+  Runner<Planned> planner_;
   Runner<std::vector<plan::Price>> pricer_;
 };
 

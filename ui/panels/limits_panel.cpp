@@ -3,13 +3,17 @@
 #include "ui/panels/limits_panel.h"
 
 #include <QCheckBox>
+#include <QComboBox>
 #include <QDoubleSpinBox>
 #include <QGridLayout>
+#include <QHBoxLayout>
 #include <QLabel>
+#include <QLineEdit>
+#include <QPushButton>
 #include <QScrollArea>
-#include <QSignalBlocker>
 #include <QSlider>
 #include <QVBoxLayout>
+#include <QWheelEvent>
 #include <algorithm>
 #include <cmath>
 
@@ -57,33 +61,36 @@ double rounded(double value) {
   return std::round(value / power) * power;
 }
 
+// The wheel scrolls the panel; it changes a number only after a click into it.
+class CalmWheel : public QObject {
+ public:
+  using QObject::QObject;
+  bool eventFilter(QObject* watched, QEvent* event) override {
+    if (event->type() != QEvent::Wheel || static_cast<QWidget*>(watched)->hasFocus()) return false;
+    event->ignore();
+    return true;
+  }
+};
+
 }  // namespace
 
 LimitsPanel::LimitsPanel(Document& document, QWidget* parent) : QWidget(parent), document_(document) {
-  auto* outer = new QVBoxLayout(this);
-  outer->setContentsMargins(6, 4, 6, 4);
-  name_ = new QLabel(this);
-  name_->setTextFormat(Qt::PlainText);
-  name_->setWordWrap(true);
-  QFont bold = name_->font();
-  bold.setBold(true);
-  name_->setFont(bold);
-  outer->addWidget(name_);
-  example_ =
-      new QLabel(tr("These are example limits, not your machine's. Enter your own before you cut."), this);
-  example_->setWordWrap(true);
-  example_->setStyleSheet(QStringLiteral("background:#fff3d6; color:#5b3a00; padding:4px;"));
-  outer->addWidget(example_);
+  makeHead();
   auto* scroll = new QScrollArea(this);
   scroll->setWidgetResizable(true);
   scroll->setFrameShape(QFrame::NoFrame);
   scroll->setHorizontalScrollBarPolicy(Qt::ScrollBarAlwaysOff);
+  scroll->setFocusPolicy(Qt::NoFocus);
   auto* body = new QWidget(scroll);
   auto* grid = new QGridLayout(body);
-  grid->setContentsMargins(0, 0, 4, 0);
-  grid->setVerticalSpacing(3);
+  grid->setContentsMargins(0, 0, 6, 0);
+  grid->setVerticalSpacing(2);
+  grid->setHorizontalSpacing(8);
   grid->setColumnStretch(2, 1);
   int line = 0;
+  addChoices(*grid, line);
+  QFont bold = font();
+  bold.setBold(true);
   std::string_view group;
   rows_.reserve(limits::fields().size());
   for (const limits::Field& field : limits::fields()) {
@@ -91,20 +98,98 @@ LimitsPanel::LimitsPanel(Document& document, QWidget* parent) : QWidget(parent),
       group = field.group;
       auto* title = new QLabel(groupTitle(group), body);
       title->setFont(bold);
+      title->setContentsMargins(0, 6, 0, 0);
       grid->addWidget(title, line++, 0, 1, 4);
     }
     addRow(*grid, line++, field);
+    if (field.name == "tool.diameter_mm") addSide(*grid, line++);
   }
   grid->setRowStretch(line, 1);
   scroll->setWidget(body);
-  outer->addWidget(scroll, 1);
-  connect(&document_, &Document::limitsChanged, this, &LimitsPanel::refresh);
-  connect(&document_, &Document::unitsChanged, this, &LimitsPanel::refresh);
+  static_cast<QVBoxLayout*>(layout())->addWidget(scroll, 1);
+  for (auto signal : {&Document::limitsChanged, &Document::unitsChanged, &Document::choicesChanged})
+    connect(&document_, signal, this, &LimitsPanel::refresh);
   refresh();
 }
 
+void LimitsPanel::makeHead() {
+  auto* outer = new QVBoxLayout(this);
+  outer->setContentsMargins(8, 4, 2, 4);
+  outer->setSpacing(4);
+  name_ = new QLineEdit(this);
+  name_->setObjectName(QStringLiteral("limitsName"));
+  name_->setAccessibleName(tr("Name of the limits"));
+  name_->setPlaceholderText(tr("Name of the machine"));
+  name_->setToolTip(tr("The name that goes into the limits file"));
+  connect(name_, &QLineEdit::editingFinished, this, [this] {
+    if (!refreshing_) document_.setLimitsName(name_->text());
+  });
+  outer->addWidget(name_);
+  example_ = new QWidget(this);
+  example_->setObjectName(QStringLiteral("exampleBanner"));
+  example_->setAttribute(Qt::WA_StyledBackground);
+  example_->setStyleSheet(
+      QStringLiteral("#exampleBanner { background:#fff3d6; border-left:4px solid #E69F00; } "
+                     "#exampleBanner QLabel { color:#5b3a00; }"));
+  auto* inside = new QHBoxLayout(example_);
+  inside->setContentsMargins(8, 3, 4, 3);
+  auto* words =
+      new QLabel(tr("Example limits, not your machine's. Enter your own before you cut."), example_);
+  words->setWordWrap(true);
+  inside->addWidget(words, 1);
+  auto* mine = new QPushButton(tr("They are &mine now"), example_);
+  mine->setObjectName(QStringLiteral("mine"));
+  mine->setToolTip(tr("Press when every number below is your machine's own"));
+  inside->addWidget(mine);
+  connect(mine, &QPushButton::clicked, &document_, &Document::confirmLimitsAreMine);
+  outer->addWidget(example_);
+}
+
+void LimitsPanel::addChoices(QGridLayout& grid, int& line) {
+  QWidget* parent = grid.parentWidget();
+  const auto add = [&](const QString& label, const QStringList& items, const QString& name) {
+    auto* box = new QComboBox(parent);
+    box->addItems(items);
+    box->setObjectName(name);
+    box->installEventFilter(new CalmWheel(box));
+    box->setFocusPolicy(Qt::StrongFocus);
+    auto* text = new QLabel(label, parent);
+    text->setBuddy(box);
+    grid.addWidget(text, line, 0);
+    grid.addWidget(box, line++, 1, 1, 3);
+    return box;
+  };
+  law_ =
+      add(tr("Plan within"),
+          {tr("jerk where a limit is given"), tr("speed and acceleration"), tr("speed, acceleration, jerk")},
+          QStringLiteral("law"));
+  joints_ = add(tr("Corners"), {tr("blend within the path tolerance"), tr("keep exact, stop there")},
+                QStringLiteral("joints"));
+  connect(law_, &QComboBox::activated, this, [this](int i) {
+    document_.setLaw(i == 0   ? std::nullopt
+                     : i == 1 ? std::optional(plan::Law::acceleration)
+                              : std::optional(plan::Law::jerk));
+  });
+  connect(joints_, &QComboBox::activated, this,
+          [this](int i) { document_.setJoints(i == 0 ? plan::Joints::blend : plan::Joints::exact); });
+}
+
+void LimitsPanel::addSide(QGridLayout& grid, int line) {
+  QWidget* parent = grid.parentWidget();
+  side_ = new QComboBox(parent);
+  side_->setObjectName(QStringLiteral("tool.side"));
+  side_->addItems({tr("on the line"), tr("left of the line"), tr("right of the line")});
+  side_->installEventFilter(new CalmWheel(side_));
+  side_->setFocusPolicy(Qt::StrongFocus);
+  auto* label = new QLabel(tr("Tool runs"), parent);
+  label->setBuddy(side_);
+  grid.addWidget(label, line, 0);
+  grid.addWidget(side_, line, 1, 1, 3);
+  connect(side_, &QComboBox::activated, this,
+          [this](int i) { document_.setSide(static_cast<limits::Side>(i)); });
+}
+
 void LimitsPanel::addRow(QGridLayout& grid, int line, const limits::Field& field) {
-  const std::size_t index = rows_.size();
   Row row;
   row.field = &field;
   QWidget* parent = grid.parentWidget();
@@ -122,17 +207,23 @@ void LimitsPanel::addRow(QGridLayout& grid, int line, const limits::Field& field
   row.number->setKeyboardTracking(false);
   row.number->setRange(1e-6, 1e9);
   row.number->setStepType(QAbstractSpinBox::AdaptiveDecimalStepType);
-  row.number->setMinimumWidth(96);
+  row.number->setMinimumWidth(84);
   row.number->setMaximumWidth(110);
+  row.number->setAlignment(Qt::AlignRight);
   row.number->setLocale(QLocale::c());
+  row.number->setFocusPolicy(Qt::StrongFocus);
+  row.number->installEventFilter(new CalmWheel(row.number));
   row.slider = new QSlider(Qt::Horizontal, parent);
   row.slider->setObjectName(qt(field.name) + QStringLiteral(".slider"));
   row.slider->setAccessibleName(tr("%1, slider").arg(qt(field.label)));
   row.slider->setRange(-kSliderReach, kSliderReach);
   row.slider->setPageStep(kSliderReach / 20);
-  row.slider->setMinimumWidth(60);
+  row.slider->setMinimumWidth(50);
+  row.slider->setFocusPolicy(Qt::StrongFocus);
+  row.slider->setToolTip(tr("Drag: from a tenth to ten times the value"));
+  row.slider->installEventFilter(new CalmWheel(row.slider));
   row.unit = new QLabel(parent);
-  row.unit->setMinimumWidth(52);
+  row.unit->setMinimumWidth(48);
   row.remembered = startValue(field);
   grid.addWidget(row.on != nullptr ? static_cast<QWidget*>(row.on) : row.label, line, 0);
   if (row.label != nullptr) row.label->setBuddy(row.number);
@@ -140,16 +231,25 @@ void LimitsPanel::addRow(QGridLayout& grid, int line, const limits::Field& field
   grid.addWidget(row.slider, line, 2);
   grid.addWidget(row.unit, line, 3);
   rows_.push_back(row);
-  if (row.on != nullptr)
+  connectRow(rows_.size() - 1);
+}
+
+void LimitsPanel::connectRow(std::size_t index) {
+  const Row& row = rows_[index];
+  if (row.on != nullptr) {
     connect(row.on, &QCheckBox::toggled, this, [this, index](bool on) {
       if (refreshing_) return;
-      Row& r = rows_[index];
+      const Row& r = rows_[index];
+      document_.endGesture();
       document_.setField(*r.field, on ? std::optional<double>(r.remembered) : std::nullopt);
     });
+  }
   connect(row.number, &QDoubleSpinBox::valueChanged, this, [this, index](double shown) {
     if (refreshing_) return;
     change(index, shown / shownFactor(qt(rows_[index].field->unit), document_.units()));
   });
+  connect(row.number, &QDoubleSpinBox::editingFinished, &document_, &Document::endGesture);
+  connect(row.slider, &QSlider::sliderPressed, &document_, &Document::endGesture);
   connect(row.slider, &QSlider::valueChanged, this, [this, index](int step) {
     if (refreshing_) return;
     const Row& r = rows_[index];
@@ -158,6 +258,7 @@ void LimitsPanel::addRow(QGridLayout& grid, int line, const limits::Field& field
   });
   // The middle stays while a drag lasts, and follows the value afterwards.
   connect(row.slider, &QSlider::sliderReleased, this, [this, index] {
+    document_.endGesture();
     rows_[index].pivot = 0.0;
     refresh();
   });
@@ -173,41 +274,45 @@ void LimitsPanel::change(std::size_t index, double fileValue) {
 void LimitsPanel::refresh() {
   refreshing_ = true;
   const limits::Limits& limits = document_.limits();
-  name_->setText(limits.name.empty() ? tr("Limits without a name") : QString::fromStdString(limits.name));
-  example_->setVisible(limits.example);
-  for (Row& row : rows_) {
-    const std::optional<double> value = row.field->get(limits);
-    const double factor = shownFactor(qt(row.field->unit), document_.units());
-    if (value) row.remembered = *value;
-    if (row.on != nullptr) row.on->setChecked(value.has_value());
-    row.number->setEnabled(row.on == nullptr || value);
-    row.slider->setEnabled(row.on == nullptr || value);
-    const double shown = row.remembered * factor;
-    row.number->setDecimals(row.field->integer ? 0
-                            : shown >= 100.0   ? (factor == 1.0 ? 0 : 1)
-                            : shown >= 1.0     ? 2
-                                               : 4);
-    // A number that the few decimals can't show exactly gets more of them.
-    while (row.number->decimals() < 6 &&
-           std::abs(std::round(shown * std::pow(10.0, row.number->decimals())) /
-                        std::pow(10.0, row.number->decimals()) -
-                    shown) > 1e-9 * shown &&
-           factor == 1.0) {
-      row.number->setDecimals(row.number->decimals() + 1);
-    }
-    if (!row.number->hasFocus() || std::abs(row.number->value() - shown) > 1e-9 * shown)
-      row.number->setValue(shown);
-    row.unit->setText(shownUnit(qt(row.field->unit), document_.units()));
-    if (!row.slider->isSliderDown()) {
-      if (!(row.pivot > 0.0) || row.remembered > row.pivot * 0.98 * kSliderFactor ||
-          row.remembered < row.pivot / (0.98 * kSliderFactor)) {
-        row.pivot = row.remembered;
-      }
-      row.slider->setValue(static_cast<int>(
-          std::lround(kSliderReach * std::log(row.remembered / row.pivot) / std::log(kSliderFactor))));
-    }
+  if (name_->text() != QString::fromStdString(limits.name)) {
+    name_->setText(QString::fromStdString(limits.name));
+    name_->setCursorPosition(0);
   }
+  example_->setVisible(limits.example);
+  side_->setCurrentIndex(static_cast<int>(limits.side));
+  const auto& choices = document_.choices();
+  law_->setCurrentIndex(!choices.law ? 0 : *choices.law == plan::Law::acceleration ? 1 : 2);
+  joints_->setCurrentIndex(choices.joints == plan::Joints::blend ? 0 : 1);
+  for (Row& row : rows_) refreshRow(row);
   refreshing_ = false;
+}
+
+void LimitsPanel::refreshRow(Row& row) {
+  const std::optional<double> value = row.field->get(document_.limits());
+  const double factor = shownFactor(qt(row.field->unit), document_.units());
+  if (value) row.remembered = *value;
+  if (row.on != nullptr) row.on->setChecked(value.has_value());
+  row.number->setEnabled(row.on == nullptr || value);
+  row.slider->setEnabled(row.on == nullptr || value);
+  const double shown = row.remembered * factor;
+  int decimals = row.field->integer ? 0 : shown >= 100.0 ? (factor == 1.0 ? 0 : 1) : shown >= 1.0 ? 2 : 4;
+  // A number that the few decimals can't show exactly gets more of them.
+  const auto exact = [shown](int n) {
+    const double power = std::pow(10.0, n);
+    return std::abs(std::round(shown * power) / power - shown) <= 1e-9 * shown;
+  };
+  while (factor == 1.0 && decimals < 6 && !exact(decimals)) ++decimals;
+  if (decimals != row.number->decimals()) row.number->setDecimals(decimals);
+  if (!row.number->hasFocus() || std::abs(row.number->value() - shown) > 1e-9 * shown)
+    row.number->setValue(shown);
+  row.unit->setText(shownUnit(qt(row.field->unit), document_.units()));
+  if (row.slider->isSliderDown()) return;
+  if (!(row.pivot > 0.0) || row.remembered > row.pivot * 0.98 * kSliderFactor ||
+      row.remembered < row.pivot / (0.98 * kSliderFactor)) {
+    row.pivot = row.remembered;
+  }
+  row.slider->setValue(static_cast<int>(
+      std::lround(kSliderReach * std::log(row.remembered / row.pivot) / std::log(kSliderFactor))));
 }
 
 }  // namespace kf::ui

@@ -8,9 +8,11 @@
 #include "ui/models/document.h"
 
 class QCheckBox;
+class QComboBox;
 class QDoubleSpinBox;
 class QGridLayout;
 class QLabel;
+class QLineEdit;
 class QSlider;
 
 namespace kf::ui {
@@ -34,13 +36,20 @@ class LimitsPanel : public QWidget {
     double pivot = 0.0;       // the slider's middle, file's unit
   };
 
-  void addRow(class QGridLayout& grid, int line, const limits::Field& field);
+  void makeHead();
+  void addChoices(QGridLayout& grid, int& line);
+  void addSide(QGridLayout& grid, int line);
+  void addRow(QGridLayout& grid, int line, const limits::Field& field);
+  void connectRow(std::size_t index);
+  void refreshRow(Row& row);
   void refresh();
   void change(std::size_t index, double fileValue);
 
   Document& document_;
   std::vector<Row> rows_;
-  QLabel *name_ = nullptr, *example_ = nullptr;
+  QLineEdit* name_ = nullptr;
+  QWidget* example_ = nullptr;
+  QComboBox *law_ = nullptr, *joints_ = nullptr, *side_ = nullptr;
   bool refreshing_ = false;
 };
 

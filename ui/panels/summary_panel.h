@@ -3,6 +3,7 @@
 #pragma once
 
 #include <QWidget>
+#include <array>
 
 #include "ui/models/document.h"
 
@@ -19,21 +20,29 @@ class SummaryPanel : public QWidget {
  private:
   void refresh();
   Document& document_;
-  QLabel *time_, *bound_, *compare_, *problem_;
+  void refreshComparison(bool planned);
+  void refreshProblem();
+  QLabel *time_, *working_, *bound_, *scope_, *compare_, *problem_;
 };
 
-// One line: s, x, y, radius, speed, what limits, time. Empty without a cursor.
+// One line: s, x, y, radius, speed, time, what limits; dashes without a cursor.
 class CursorReadout : public QWidget {
   Q_OBJECT
 
  public:
   explicit CursorReadout(Document& document, QWidget* parent = nullptr);
   QString text() const;
+  QSize minimumSizeHint() const override { return {200, QWidget::minimumSizeHint().height()}; }
+
+ protected:
+  void resizeEvent(QResizeEvent* event) override;
 
  private:
   void refresh();
+  void refit();
   Document& document_;
-  QLabel* label_;
+  std::array<QLabel*, 7> heads_{}, values_{};
+  QLabel* swatch_ = nullptr;
 };
 
 }  // namespace kf::ui

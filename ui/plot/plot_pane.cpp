@@ -4,7 +4,9 @@
 
 #include <qcustomplot.h>
 
-#include <QVBoxLayout>
+#include <QKeyEvent>
+#include <QLabel>
+#include <QStackedLayout>
 #include <algorithm>
 #include <cmath>
 
@@ -13,8 +15,10 @@
 namespace kf::ui {
 namespace {
 
-const QColor kCurvature(0xCC, 0x79, 0xA7), kAllowed(0xE6, 0x9F, 0x00), kPlanned(0x00, 0x72, 0xB2),
-    kReference(0x55, 0x55, 0x55);
+const QColor kCurvature(0xB0, 0x50, 0x88), kAllowed(0xE6, 0x9F, 0x00), kPlanned(0x00, 0x72, 0xB2),
+    kReference(0x33, 0x38, 0x40), kCursor(0xD5, 0x5E, 0x00), kWords(0x2f, 0x36, 0x40),
+    kFrame(0x8a, 0x92, 0x9d);
+constexpr std::size_t kSpotsShown = 12;
 
 // Time at each node of the path; both sides of a break share it.
 std::vector<double> timesAtNodes(const path::Path& path, const schedule::Schedule& schedule) {
@@ -35,6 +39,9 @@ struct PlotPane::Parts {
   QCPGraph *bend = nullptr, *allowed = nullptr, *planned = nullptr, *reference = nullptr;
   QCPLegend* speedLegend = nullptr;
   QCPItemStraightLine *bendLine = nullptr, *speedLine = nullptr;
+  QCPItemTracer *bendDot = nullptr, *speedDot = nullptr;
+  std::vector<QCPItemText*> spots;  // numbers of the worst tight spots, above the speed
+  QStackedLayout* pages = nullptr;
   bool time = false, busy = false;
   bool whole = true;  // the view follows the whole path until the user zooms or pans
   // The full data, in shown units.
@@ -43,12 +50,26 @@ struct PlotPane::Parts {
 
 PlotPane::PlotPane(Document& document, QWidget* parent)
     : QWidget(parent), document_(document), parts_(std::make_unique<Parts>()) {
-  auto* layout = new QVBoxLayout(this);
-  layout->setContentsMargins(0, 0, 0, 0);
-  auto* plot = parts_->plot = new QCustomPlot(this);
-  layout->addWidget(plot);
   setMinimumHeight(150);
+  setFocusPolicy(Qt::StrongFocus);
   setAccessibleName(tr("Curvature and speed along the path"));
+  parts_->pages = new QStackedLayout(this);
+  parts_->plot = new QCustomPlot(this);
+  auto* empty = new QLabel(tr("Curvature, and allowed and planned speed, show here"), this);
+  empty->setAlignment(Qt::AlignCenter);
+  empty->setStyleSheet(QStringLiteral("background:white; color:#5c6470;"));
+  parts_->pages->addWidget(empty);
+  parts_->pages->addWidget(parts_->plot);
+  makeRects();
+  makeGraphs();
+  makeItems();
+  linkAxes();
+  connectDocument();
+  labelAxes();
+}
+
+void PlotPane::makeRects() {
+  QCustomPlot* plot = parts_->plot;
   plot->setPlottingHint(QCP::phFastPolylines, true);
   plot->setNoAntialiasingOnDrag(true);
   plot->plotLayout()->clear();
@@ -64,11 +85,27 @@ PlotPane::PlotPane(Document& document, QWidget* parent)
     rect->setRangeDrag(Qt::Horizontal);
     rect->setRangeZoom(Qt::Horizontal);
     rect->setMinimumMargins(QMargins(8, 4, 12, 4));
-    for (QCPAxis* axis : rect->axes()) axis->setLayer(QStringLiteral("axes"));
-    for (QCPGrid* grid : {rect->axis(QCPAxis::atBottom)->grid(), rect->axis(QCPAxis::atLeft)->grid()})
+    for (QCPAxis* axis : rect->axes()) {
+      axis->setLayer(QStringLiteral("axes"));
+      axis->setSubTicks(false);
+      axis->setBasePen(QPen(kFrame));
+      axis->setTickPen(QPen(kFrame));
+      axis->setLabelColor(kWords);
+      axis->setTickLabelColor(kWords);
+      axis->setNumberFormat(QStringLiteral("g"));
+    }
+    for (QCPGrid* grid : {rect->axis(QCPAxis::atBottom)->grid(), rect->axis(QCPAxis::atLeft)->grid()}) {
       grid->setLayer(QStringLiteral("grid"));
+      grid->setPen(QPen(QColor(0xe3, 0xe6, 0xea), 1));
+      grid->setZeroLinePen(QPen(QColor(0xb9, 0xbf, 0xc8), 1));
+    }
+    rect->axis(QCPAxis::atLeft)->ticker()->setTickCount(4);
   }
   parts_->bendRect->axis(QCPAxis::atBottom)->setTickLabels(false);
+}
+
+void PlotPane::makeGraphs() {
+  QCustomPlot* plot = parts_->plot;
   const auto graph = [plot](QCPAxisRect* rect, const QString& name, const QPen& pen) {
     auto* g = plot->addGraph(rect->axis(QCPAxis::atBottom), rect->axis(QCPAxis::atLeft));
     g->setName(name);
@@ -77,28 +114,68 @@ PlotPane::PlotPane(Document& document, QWidget* parent)
     return g;
   };
   parts_->bend = graph(parts_->bendRect, tr("curvature, left turn up"), QPen(kCurvature, 1.6));
-  parts_->allowed = graph(parts_->speedRect, tr("allowed speed"), QPen(kAllowed, 1.4, Qt::DashLine));
-  parts_->reference = graph(parts_->speedRect, tr("pinned plan"), QPen(kReference, 1.4, Qt::DotLine));
+  parts_->allowed = graph(parts_->speedRect, tr("allowed speed"), QPen(kAllowed, 1.2));
+  parts_->reference = graph(parts_->speedRect, tr("pinned plan"), QPen(kReference, 1.6, Qt::DashLine));
   parts_->planned = graph(parts_->speedRect, tr("planned speed"), QPen(kPlanned, 2));
   parts_->planned->setBrush(QColor(0x00, 0x72, 0xB2, 28));
   for (QCPAxisRect* rect : {parts_->bendRect, parts_->speedRect}) {
-    auto* line = new QCPItemStraightLine(plot);
-    line->setClipAxisRect(rect);
-    line->setPen(QPen(QColor(0xD5, 0x5E, 0x00), 1.2));
-    line->setVisible(false);
-    for (QCPItemPosition* p : line->positions())
-      p->setAxes(rect->axis(QCPAxis::atBottom), rect->axis(QCPAxis::atLeft));
-    (rect == parts_->bendRect ? parts_->bendLine : parts_->speedLine) = line;
     auto* legend = new QCPLegend;
     rect->insetLayout()->addElement(legend, Qt::AlignTop | Qt::AlignRight);
     legend->setLayer(QStringLiteral("legend"));
     legend->setFillOrder(QCPLegend::foColumnsFirst);
     legend->setBorderPen(Qt::NoPen);
-    legend->setBrush(QColor(255, 255, 255, 200));
+    legend->setBrush(QColor(255, 255, 255, 215));
     legend->setMargins({6, 2, 6, 2});
+    legend->setTextColor(kWords);
     for (QCPGraph* g : rect->graphs()) g->addToLegend(legend);
     if (rect == parts_->speedRect) parts_->speedLegend = legend;
   }
+}
+
+// The cursor's line and dots, and the numbers of the tight spots.
+void PlotPane::makeItems() {
+  QCustomPlot* plot = parts_->plot;
+  for (QCPAxisRect* rect : {parts_->bendRect, parts_->speedRect}) {
+    QCPAxis *across = rect->axis(QCPAxis::atBottom), *up = rect->axis(QCPAxis::atLeft);
+    auto* line = new QCPItemStraightLine(plot);
+    line->setClipAxisRect(rect);
+    line->setPen(QPen(kCursor, 1.2));
+    auto* dot = new QCPItemTracer(plot);
+    dot->setClipAxisRect(rect);
+    dot->setStyle(QCPItemTracer::tsCircle);
+    dot->setSize(9);
+    dot->setPen(QPen(kCursor, 2));
+    dot->setBrush(Qt::white);
+    for (QCPAbstractItem* item : {static_cast<QCPAbstractItem*>(line), static_cast<QCPAbstractItem*>(dot)}) {
+      item->setVisible(false);
+      item->setSelectable(false);
+      for (QCPItemPosition* p : item->positions()) p->setAxes(across, up);
+    }
+    (rect == parts_->bendRect ? parts_->bendLine : parts_->speedLine) = line;
+    (rect == parts_->bendRect ? parts_->bendDot : parts_->speedDot) = dot;
+  }
+  for (std::size_t i = 0; i < kSpotsShown; ++i) {
+    auto* text = new QCPItemText(plot);
+    text->setClipAxisRect(parts_->speedRect);
+    text->position->setAxes(parts_->speedRect->axis(QCPAxis::atBottom),
+                            parts_->speedRect->axis(QCPAxis::atLeft));
+    text->position->setTypeY(QCPItemPosition::ptAxisRectRatio);
+    text->position->setAxisRect(parts_->speedRect);
+    text->setPositionAlignment(Qt::AlignHCenter | Qt::AlignBottom);
+    text->setText(QString::number(i + 1));
+    text->setColor(kWords);
+    text->setPadding(QMargins(3, 0, 3, 0));
+    text->setBrush(QColor(255, 255, 255, 200));
+    text->setPen(QPen(kFrame, 1));
+    text->setVisible(false);
+    text->setSelectable(false);
+    parts_->spots.push_back(text);
+  }
+}
+
+// Both parts show the same stretch; a user's zoom or pan is told to the document.
+void PlotPane::linkAxes() {
+  QCustomPlot* plot = parts_->plot;
   plot->setInteractions(QCP::iRangeDrag | QCP::iRangeZoom);
   QCPAxis *bendX = parts_->bendRect->axis(QCPAxis::atBottom),
           *speedX = parts_->speedRect->axis(QCPAxis::atBottom);
@@ -110,32 +187,75 @@ PlotPane::PlotPane(Document& document, QWidget* parent)
       other->setRange(range);
       parts_->busy = false;
       decimate();
+      tellStretch();
       parts_->plot->replot(QCustomPlot::rpQueuedReplot);
     };
   };
   connect(bendX, qOverload<const QCPRange&>(&QCPAxis::rangeChanged), this, follow(speedX));
   connect(speedX, qOverload<const QCPRange&>(&QCPAxis::rangeChanged), this, follow(bendX));
+  connect(plot, &QCustomPlot::mousePress, this, [this] { setFocus(Qt::MouseFocusReason); });
   connect(plot, &QCustomPlot::mouseMove, this, [this, speedX](QMouseEvent* event) {
-    const auto* planned = document_.plan();
-    if (planned == nullptr || event->buttons() != Qt::NoButton) return;
-    const double at = speedX->pixelToCoord(event->position().x());
-    document_.setCursor(parts_->time ? planned->plan.schedule.atTime(at).s : toMm(at, document_.units()));
+    if (document_.plan() != nullptr && event->buttons() == Qt::NoButton)
+      document_.setCursor(lengthAt(speedX->pixelToCoord(event->position().x())));
   });
   connect(plot, &QCustomPlot::mouseDoubleClick, this, &PlotPane::showWhole);
-  connect(&document_, &Document::opened, this, [this] { rebuild(); });
-  connect(&document_, &Document::plansChanged, this, [this] { rebuild(); });
-  connect(&document_, &Document::referenceChanged, this, [this] { rebuild(); });
-  connect(&document_, &Document::chosenChanged, this, [this] {
+}
+
+void PlotPane::connectDocument() {
+  const auto wholeAgain = [this] {
+    parts_->whole = true;
     rebuild();
-    showWhole();
-  });
-  connect(&document_, &Document::unitsChanged, this, [this] {
-    rebuild();
-    showWhole();
-  });
+  };
+  connect(&document_, &Document::opened, this, wholeAgain);
+  connect(&document_, &Document::chosenChanged, this, wholeAgain);
+  connect(&document_, &Document::unitsChanged, this, wholeAgain);
+  connect(&document_, &Document::plansChanged, this, &PlotPane::rebuild);
+  connect(&document_, &Document::referenceChanged, this, &PlotPane::rebuild);
   connect(&document_, &Document::cursorChanged, this, &PlotPane::placeCursor);
   connect(&document_, &Document::placeShown, this, &PlotPane::showPlace);
-  labelAxes();
+}
+
+double PlotPane::lengthAt(double shown) const {
+  const auto* planned = document_.plan();
+  if (planned == nullptr) return 0.0;
+  const double s = parts_->time ? planned->plan.schedule.atTime(shown).s : toMm(shown, document_.units());
+  return std::clamp(s, 0.0, planned->facts.length);
+}
+
+void PlotPane::tellStretch() {
+  if (parts_->whole || document_.plan() == nullptr) {
+    document_.setStretch(std::nullopt);
+  } else {
+    document_.setStretch(std::pair(lengthAt(rangeLow()), lengthAt(rangeHigh())));
+  }
+}
+
+void PlotPane::keyPressEvent(QKeyEvent* event) {
+  const auto* planned = document_.plan();
+  QCPAxis* axis = parts_->speedRect->axis(QCPAxis::atBottom);
+  const double step =
+      planned == nullptr ? 0.0 : planned->facts.length / (event->modifiers() & Qt::ShiftModifier ? 50 : 500);
+  switch (event->key()) {
+    case Qt::Key_Right:
+      document_.setCursor(document_.cursor().value_or(0.0) + step);
+      break;
+    case Qt::Key_Left:
+      document_.setCursor(document_.cursor().value_or(0.0) - step);
+      break;
+    case Qt::Key_Plus:
+    case Qt::Key_Equal:
+      axis->scaleRange(
+          0.8, parts_->speedLine->visible() ? parts_->speedLine->point1->key() : axis->range().center());
+      break;
+    case Qt::Key_Minus:
+      axis->scaleRange(1.25, axis->range().center());
+      break;
+    case Qt::Key_Home:
+      showWhole();
+      break;
+    default:
+      QWidget::keyPressEvent(event);
+  }
 }
 
 PlotPane::~PlotPane() = default;
@@ -176,6 +296,7 @@ void PlotPane::rebuild() {
   labelAxes();
   for (auto* list : {&p.x, &p.k, &p.cap, &p.v, &p.referenceX, &p.referenceV}) list->clear();
   const auto* planned = document_.plan();
+  p.pages->setCurrentIndex(planned == nullptr ? 0 : 1);
   const Units units = document_.units();
   if (planned != nullptr) {
     const path::Path& path = *planned->path;
@@ -240,10 +361,37 @@ void PlotPane::fitBendAxis() {
   p.bend->setName(cut ? tr("curvature, left turn up; peaks cut") : tr("curvature, left turn up"));
 }
 
+// Numbers stand at the foot of the speed plot; of those that would cover one another the worst stays.
+void PlotPane::placeSpots() {
+  const auto* planned = document_.plan();
+  const QCPAxis* across = parts_->speedRect->axis(QCPAxis::atBottom);
+  std::vector<double> taken;
+  for (std::size_t i = 0; i < parts_->spots.size(); ++i) {
+    QCPItemText* text = parts_->spots[i];
+    text->setVisible(false);
+    if (planned == nullptr || i >= planned->tightSpots.size()) continue;
+    const double s = planned->tightSpots[i].s;
+    const double at = parts_->time ? planned->plan.schedule.atLength(s).t : fromMm(s, document_.units());
+    const double pixel = across->coordToPixel(at);
+    if (std::any_of(taken.begin(), taken.end(), [&](double other) { return std::abs(other - pixel) < 18.0; }))
+      continue;
+    taken.push_back(pixel);
+    text->setVisible(true);
+    const double left = parts_->speedRect->left() + 9.0, right = parts_->speedRect->right() - 9.0;
+    const bool inside = pixel >= left - 9.0 && pixel <= right + 9.0;
+    text->position->setCoords(
+        inside && right > left ? across->pixelToCoord(std::clamp(pixel, left, right)) : at, 0.98);
+  }
+}
+
 void PlotPane::showWhole() {
   const double end = parts_->x.empty() ? 1.0 : parts_->x.back();
-  parts_->speedRect->axis(QCPAxis::atBottom)->setRange(0.0, end > 0.0 ? end : 1.0);
   parts_->whole = true;
+  parts_->busy = true;
+  for (QCPAxisRect* rect : {parts_->bendRect, parts_->speedRect})
+    rect->axis(QCPAxis::atBottom)->setRange(0.0, end > 0.0 ? end : 1.0);
+  parts_->busy = false;
+  tellStretch();
   decimate();
   placeCursor();
 }
@@ -273,6 +421,7 @@ void PlotPane::decimate() {
   give(p.allowed, p.x, p.cap);
   give(p.planned, p.x, p.v);
   give(p.reference, p.referenceX, p.referenceV);
+  placeSpots();
 }
 
 void PlotPane::placeCursor() {
@@ -286,6 +435,14 @@ void PlotPane::placeCursor() {
     line->setVisible(shown);
     line->point1->setCoords(at, 0.0);
     line->point2->setCoords(at, 1.0);
+  }
+  p.bendDot->setVisible(shown);
+  p.speedDot->setVisible(shown);
+  if (shown) {
+    const double k = planned->path->sample(*document_.cursor()).k;
+    const double v = planned->plan.schedule.atLength(*document_.cursor()).v;
+    p.bendDot->position->setCoords(at, document_.units() == Units::inch ? 25.4 * k : k);
+    p.speedDot->position->setCoords(at, fromMm(60.0 * v, document_.units()));
   }
   p.plot->replot(QCustomPlot::rpQueuedReplot);
 }

@@ -10,7 +10,7 @@
 namespace kf::ui {
 
 // Moving the mouse moves the cursor; wheel zooms along the path, drag pans, double click shows the whole
-// path.
+// path. With the keyboard: arrows step, + and - zoom, Home shows the whole path.
 class PlotPane : public QWidget {
   Q_OBJECT
 
@@ -29,8 +29,19 @@ class PlotPane : public QWidget {
  signals:
   void axisChanged(bool time);
 
+ protected:
+  void keyPressEvent(QKeyEvent* event) override;
+
  private:
   struct Parts;
+  void makeRects();
+  void makeGraphs();
+  void makeItems();
+  void linkAxes();
+  void connectDocument();
+  double lengthAt(double shown) const;  // arc length, mm
+  void tellStretch();
+  void placeSpots();
   void rebuild();
   void decimate();
   void placeCursor();

@@ -8,64 +8,81 @@
 #include <QLabel>
 #include <QMenuBar>
 #include <QMessageBox>
+#include <QStatusBar>
 #include <QToolBar>
+#include <QToolButton>
 
 #include "ui/canvas/canvas.h"
 #include "ui/dialogs/dialogs.h"
 #include "ui/plot/plot_pane.h"
 
 namespace kf::ui {
+namespace {
+
+QIcon iconNamed(const char* name) {
+  return QIcon(QStringLiteral(":/kappafeed/icons/%1.svg").arg(QLatin1String(name)));
+}
+
+}  // namespace
 
 void MainWindow::makeActions() {
-  const auto make = [this](const QString& text, const QKeySequence& key, const QString& tip = {}) {
+  const auto make = [this](const QString& text, const QKeySequence& key, const QString& tip = {},
+                           const char* icon = nullptr) {
     auto* action = new QAction(text, this);
+    if (icon != nullptr) action->setIcon(iconNamed(icon));
     action->setShortcut(key);
     QString shown = tip.isEmpty() ? QString(text).remove(u'&').remove(u'\u2026') : tip;
     if (!key.isEmpty()) shown += QStringLiteral(" (%1)").arg(key.toString(QKeySequence::NativeText));
     action->setToolTip(shown);
     return action;
   };
-  const auto toggle = [&](const QString& text, const QKeySequence& key, const QString& tip = {}) {
-    QAction* action = make(text, key, tip);
+  const auto toggle = [&](const QString& text, const QKeySequence& key, const QString& tip = {},
+                          const char* icon = nullptr) {
+    QAction* action = make(text, key, tip, icon);
     action->setCheckable(true);
     return action;
   };
   Actions& a = *act_;
-  a.open = make(tr("&Open drawing\u2026"), QKeySequence::Open);
-  a.openLimits = make(tr("Open &limits\u2026"), QKeySequence(tr("Ctrl+L")));
-  a.saveLimits = make(tr("&Save limits\u2026"), QKeySequence::Save);
-  a.exportPoints = make(tr("&Export points\u2026"), QKeySequence(tr("Ctrl+E")), tr("Write the point list"));
-  a.saveCanvas = make(tr("Save picture of the &drawing\u2026"), {});
-  a.savePlot = make(tr("Save picture of the &plot\u2026"), {});
-  a.quit = make(tr("&Quit"), QKeySequence::Quit);
+  a.open = make(tr("&Open drawing\u2026"), QKeySequence::Open, {}, "open");
+  a.openLimits = make(tr("Open &limits\u2026"), QKeySequence(tr("Ctrl+L")), {}, "limits");
+  a.saveLimits = make(tr("&Save limits"), QKeySequence::Save);
+  a.saveLimitsAs = make(tr("Save limits &as\u2026"), QKeySequence(tr("Ctrl+Shift+S")));
+  a.exportPoints =
+      make(tr("&Export points\u2026"), QKeySequence(tr("Ctrl+E")), tr("Write the point list"), "export");
+  a.saveCanvas = make(tr("Save picture of the &drawing\u2026"), QKeySequence(tr("Ctrl+Shift+D")));
+  a.savePlot = make(tr("Save picture of the &plot\u2026"), QKeySequence(tr("Ctrl+Shift+P")));
+  a.quit = make(tr("&Quit"), QKeySequence(tr("Ctrl+Q")));
   a.undo = document_.undoStack().createUndoAction(this, tr("Undo"));
   a.undo->setShortcut(QKeySequence::Undo);
+  a.undo->setIcon(iconNamed("undo"));
   a.redo = document_.undoStack().createRedoAction(this, tr("Redo"));
-  a.redo->setShortcut(QKeySequence::Redo);
+  a.redo->setShortcuts({QKeySequence(tr("Ctrl+Shift+Z")), QKeySequence(tr("Ctrl+Y"))});
+  a.redo->setIcon(iconNamed("redo"));
   a.copySpots = make(tr("&Copy tight spots"), QKeySequence(tr("Ctrl+Shift+C")));
-  a.fit = make(tr("&Fit drawing"), QKeySequence(tr("F")));
+  a.fit = make(tr("&Fit drawing"), QKeySequence(tr("F")), {}, "fit");
   a.whole = make(tr("&Whole path in the plot"), QKeySequence(tr("W")));
-  a.zoomIn = make(tr("Zoom &in"), QKeySequence::ZoomIn);
-  a.zoomOut = make(tr("Zoom &out"), QKeySequence::ZoomOut);
-  a.againstTime = toggle(tr("Plot against &time"), QKeySequence(tr("T")));
-  a.inches = toggle(tr("Show i&nches"), QKeySequence(tr("I")));
+  a.zoomIn = make(tr("Zoom &in"), QKeySequence::ZoomIn, {}, "zoom_in");
+  a.zoomOut = make(tr("Zoom &out"), QKeySequence::ZoomOut, {}, "zoom_out");
+  a.againstTime = toggle(tr("Plot against &time"), QKeySequence(tr("T")), {}, "time");
+  a.inches = toggle(tr("Show i&nches"), QKeySequence(tr("I")), tr("Inches instead of millimetres"));
   a.bySpeed = toggle(tr("Colour by planned &speed"), QKeySequence(tr("1")));
   a.byCurvature = toggle(tr("Colour by &curvature"), QKeySequence(tr("2")));
   a.byLimit = toggle(tr("Colour by what &limits"), QKeySequence(tr("3")));
-  a.play = toggle(tr("&Play"), QKeySequence(tr("Space")), tr("Move a marker along the path in time"));
-  a.pin = make(tr("Pin this &plan"), QKeySequence(tr("P")), tr("Keep this plan to compare later ones with"));
+  a.play = toggle(tr("&Play"), QKeySequence(tr("F5")), tr("Move a marker along the path in time"), "play");
+  a.pin =
+      make(tr("Pin &plan"), QKeySequence(tr("P")), tr("Keep this plan to compare later ones with"), "pin");
   a.unpin = make(tr("&Unpin"), QKeySequence(tr("Shift+P")), tr("Drop the pinned plan"));
   a.nextContour = make(tr("&Next contour"), QKeySequence(tr("Ctrl+PgDown")));
   a.previousContour = make(tr("P&revious contour"), QKeySequence(tr("Ctrl+PgUp")));
-  a.stop = make(tr("Stop"), QKeySequence(Qt::Key_Escape));
-  a.cautions = make(tr("&Cautions\u2026"), {});
+  a.stop = make(tr("&Stop"), QKeySequence(Qt::Key_Escape), tr("Stop opening, planning or playing"));
+  a.cautions = make(tr("&Cautions\u2026"), QKeySequence(tr("F1")));
   a.about = make(tr("&About Kappafeed\u2026"), {});
   a.inches->setChecked(document_.units() == Units::inch);
-  addAction(a.stop);
 
   connect(a.open, &QAction::triggered, this, &MainWindow::chooseDrawing);
   connect(a.openLimits, &QAction::triggered, this, &MainWindow::chooseLimits);
-  connect(a.saveLimits, &QAction::triggered, this, &MainWindow::saveLimits);
+  connect(a.saveLimits, &QAction::triggered, this, [this] { saveLimits(false); });
+  connect(a.saveLimitsAs, &QAction::triggered, this, [this] { saveLimits(true); });
   connect(a.exportPoints, &QAction::triggered, this, &MainWindow::exportPoints);
   connect(a.saveCanvas, &QAction::triggered, this, [this] { exportPicture(false); });
   connect(a.savePlot, &QAction::triggered, this, [this] { exportPicture(true); });
@@ -86,7 +103,11 @@ void MainWindow::makeActions() {
   connect(a.nextContour, &QAction::triggered, this, [this] { document_.choose(document_.chosen() + 1); });
   connect(a.previousContour, &QAction::triggered, this, [this] { document_.choose(document_.chosen() - 1); });
   connect(a.stop, &QAction::triggered, this, [this] {
-    document_.cancelOpening();
+    if (document_.isOpening()) {
+      document_.cancelOpening();
+      statusBar()->showMessage(tr("Stopped opening"), 5'000);
+      canvas_->update();
+    }
     togglePlay(false);
   });
   connect(a.cautions, &QAction::triggered, this,
@@ -113,7 +134,7 @@ void MainWindow::makeActions() {
 void MainWindow::makeMenus() {
   Actions& a = *act_;
   QMenu* file = menuBar()->addMenu(tr("&File"));
-  file->addActions({a.open, a.openLimits, a.saveLimits});
+  file->addActions({a.open, a.openLimits, a.saveLimits, a.saveLimitsAs});
   file->addSeparator();
   file->addActions({a.exportPoints, a.saveCanvas, a.savePlot});
   file->addSeparator();
@@ -127,39 +148,65 @@ void MainWindow::makeMenus() {
   view->addSeparator();
   view->addActions({a.againstTime, a.inches});
   QMenu* plan = menuBar()->addMenu(tr("&Plan"));
-  plan->addActions({a.play, a.pin, a.unpin});
+  plan->addActions({a.play, a.stop, a.pin, a.unpin});
   plan->addSeparator();
   plan->addActions({a.nextContour, a.previousContour});
   QMenu* help = menuBar()->addMenu(tr("&Help"));
   help->addActions({a.cautions, a.about});
 
+  makeToolBar();
+}
+
+void MainWindow::makeToolBar() {
+  Actions& a = *act_;
   auto* bar = addToolBar(tr("Tools"));
+  bar->setObjectName(QStringLiteral("tools"));
   bar->setMovable(false);
-  bar->setToolButtonStyle(Qt::ToolButtonTextOnly);
+  bar->setIconSize(QSize(20, 20));
+  bar->setToolButtonStyle(Qt::ToolButtonTextBesideIcon);
+  bar->setContextMenuPolicy(Qt::PreventContextMenu);
+  const auto iconOnly = [bar](QAction* action) {
+    static_cast<QToolButton*>(bar->widgetForAction(action))->setToolButtonStyle(Qt::ToolButtonIconOnly);
+  };
+  a.open->setIconText(tr("Open"));
+  a.openLimits->setIconText(tr("Limits"));
+  a.exportPoints->setIconText(tr("Export"));
+  a.pin->setIconText(tr("Pin"));
   bar->addActions({a.open, a.openLimits, a.exportPoints});
   bar->addSeparator();
-  bar->addActions({a.undo, a.redo});
+  bar->addActions({a.undo, a.redo, a.zoomIn, a.zoomOut, a.fit});
+  for (QAction* action : {a.undo, a.redo, a.zoomIn, a.zoomOut, a.fit}) iconOnly(action);
   bar->addSeparator();
-  bar->addWidget(new QLabel(tr(" Colour by "), bar));
+  auto* label = new QLabel(tr(" Colour by "), bar);
+  bar->addWidget(label);
   colouring_ = new QComboBox(bar);
+  colouring_->setObjectName(QStringLiteral("colouring"));
   colouring_->setAccessibleName(tr("Colour by"));
   colouring_->addItems({tr("planned speed"), tr("curvature"), tr("what limits")});
+  label->setBuddy(colouring_);
   bar->addWidget(colouring_);
   connect(colouring_, &QComboBox::activated, this,
           [this](int i) { document_.setColouring(static_cast<Colouring>(i)); });
   connect(&document_, &Document::colouringChanged, this, [this] {
     const int i = static_cast<int>(document_.colouring());
     colouring_->setCurrentIndex(i);
-    for (QAction* action : {act_->bySpeed, act_->byCurvature, act_->byLimit})
-      action->setChecked(action == (i == 0 ? act_->bySpeed : i == 1 ? act_->byCurvature : act_->byLimit));
+    QAction* ways[] = {act_->bySpeed, act_->byCurvature, act_->byLimit};
+    ways[i]->setChecked(true);
   });
+  bar->addSeparator();
   bar->addActions({a.againstTime, a.inches});
+  iconOnly(a.againstTime);
+  a.inches->setIconText(tr("inch"));
   bar->addSeparator();
   bar->addAction(a.play);
+  iconOnly(a.play);
   rate_ = new QComboBox(bar);
+  rate_->setObjectName(QStringLiteral("rate"));
   rate_->setAccessibleName(tr("Play rate"));
-  for (double rate : {0.1, 1.0, 10.0, 100.0}) rate_->addItem(tr("x %1").arg(rate), rate);
-  rate_->setCurrentIndex(1);
+  rate_->setToolTip(tr("How much faster than the machine the marker moves"));
+  for (double rate : {0.1, 0.5, 1.0, 2.0, 10.0, 100.0})
+    rate_->addItem(QStringLiteral("\u00D7%1").arg(rate), rate);
+  rate_->setCurrentIndex(2);
   bar->addWidget(rate_);
   bar->addSeparator();
   bar->addActions({a.pin, a.unpin});
@@ -168,6 +215,7 @@ void MainWindow::makeMenus() {
 void MainWindow::refreshActions() {
   Actions& a = *act_;
   const bool drawing = !document_.isEmpty(), planned = document_.plan() != nullptr;
+  a.saveLimits->setEnabled(!document_.limitsAreSaved() || document_.limitsPath().isEmpty());
   for (QAction* action : {a.fit, a.whole, a.zoomIn, a.zoomOut, a.saveCanvas}) action->setEnabled(drawing);
   for (QAction* action : {a.exportPoints, a.savePlot, a.copySpots, a.play, a.pin})
     action->setEnabled(planned);

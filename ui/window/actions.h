@@ -9,7 +9,7 @@ class QAction;
 namespace kf::ui {
 
 struct MainWindow::Actions {
-  QAction *open, *openLimits, *saveLimits, *exportPoints, *saveCanvas, *savePlot, *quit;
+  QAction *open, *openLimits, *saveLimits, *saveLimitsAs, *exportPoints, *saveCanvas, *savePlot, *quit;
   QAction *undo, *redo, *copySpots;
   QAction *fit, *whole, *zoomIn, *zoomOut, *againstTime, *inches, *bySpeed, *byCurvature, *byLimit;
   QAction *play, *pin, *unpin, *nextContour, *previousContour, *stop;

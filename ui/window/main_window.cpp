@@ -8,6 +8,7 @@
 #include <QClipboard>
 #include <QCloseEvent>
 #include <QComboBox>
+#include <QDir>
 #include <QDragEnterEvent>
 #include <QDropEvent>
 #include <QFileDialog>
@@ -15,13 +16,16 @@
 #include <QLabel>
 #include <QMessageBox>
 #include <QMimeData>
+#include <QProgressDialog>
 #include <QSplitter>
 #include <QStatusBar>
+#include <QTabWidget>
 #include <QUrl>
 #include <QVBoxLayout>
 
 #include "ui/canvas/canvas.h"
 #include "ui/dialogs/dialogs.h"
+#include "ui/panels/import_panel.h"
 #include "ui/panels/limits_panel.h"
 #include "ui/panels/summary_panel.h"
 #include "ui/panels/tables.h"
@@ -29,11 +33,18 @@
 #include "ui/plot/plot_pane.h"
 #include "ui/window/actions.h"
 
+// The icons live in a static library: they must be asked for by name, outside any namespace.
+static void loadIcons() {
+  Q_INIT_RESOURCE(window);
+}
+
 namespace kf::ui {
 
 MainWindow::MainWindow(Document& document, Settings& settings, QWidget* parent)
     : QMainWindow(parent), document_(document), settings_(settings), act_(std::make_unique<Actions>()) {
+  loadIcons();
   setAcceptDrops(true);
+  setWindowIcon(QIcon(QStringLiteral(":/kappafeed/kappafeed.svg")));
   document_.setUnits(settings_.value(Key::shownInches).toBool() ? Units::inch : Units::mm);
   makeLayout();
   makeActions();
@@ -50,71 +61,82 @@ MainWindow::MainWindow(Document& document, Settings& settings, QWidget* parent)
 MainWindow::~MainWindow() = default;
 
 void MainWindow::makeLayout() {
-  canvas_ = new Canvas(document_, this);
-  plot_ = new PlotPane(document_, this);
-  limits_ = new LimitsPanel(document_, this);
-  contours_ = new ContourTable(document_, this);
-  spots_ = new SpotTable(document_, this);
-  strip_ = new TimeStrip(document_, this);
-  summary_ = new SummaryPanel(document_, this);
-  readout_ = new CursorReadout(document_, this);
-  import_ = new QLabel(this);
-  import_->setWordWrap(true);
-  import_->setTextFormat(Qt::PlainText);
-  import_->setStyleSheet(QStringLiteral("background:#fff3d6; color:#5b3a00; padding:4px;"));
-  import_->hide();
-
-  auto* left = new QSplitter(Qt::Vertical, this);
-  left->addWidget(canvas_);
-  left->addWidget(plot_);
-  left->setSizes({460, 310});
-  left->setStretchFactor(0, 3);
-  left->setStretchFactor(1, 2);
-  auto* leftBox = new QWidget(this);
-  auto* leftLayout = new QVBoxLayout(leftBox);
-  leftLayout->setContentsMargins(0, 0, 0, 0);
-  leftLayout->setSpacing(4);
-  leftLayout->addWidget(readout_);
-  leftLayout->addWidget(left, 1);
-  leftLayout->addWidget(strip_);
-
-  const auto titled = [this](const QString& title, QWidget* content) {
-    auto* box = new QWidget(this);
-    auto* layout = new QVBoxLayout(box);
-    layout->setContentsMargins(0, 2, 0, 0);
-    layout->setSpacing(2);
-    auto* label = new QLabel(title, box);
-    label->setBuddy(content);
-    label->setContentsMargins(8, 0, 0, 0);
-    QFont bold = label->font();
-    bold.setBold(true);
-    label->setFont(bold);
-    layout->addWidget(label);
-    layout->addWidget(content, 1);
-    return box;
-  };
-  auto* right = new QSplitter(Qt::Vertical, this);
-  right->addWidget(titled(tr("Contours"), contours_));
-  right->addWidget(titled(tr("Limits"), limits_));
-  right->addWidget(titled(tr("Tight spots of the chosen contour, most time lost first"), spots_));
-  right->setSizes({120, 380, 260});
-  right->setStretchFactor(1, 1);
-  auto* rightBox = new QWidget(this);
-  auto* rightLayout = new QVBoxLayout(rightBox);
-  rightLayout->setContentsMargins(0, 0, 0, 0);
-  rightLayout->setSpacing(0);
-  rightLayout->addWidget(summary_);
-  rightLayout->addWidget(import_);
-  rightLayout->addWidget(right, 1);
-
   auto* all = new QSplitter(Qt::Horizontal, this);
-  all->addWidget(leftBox);
-  all->addWidget(rightBox);
+  all->addWidget(makeLeft());
+  all->addWidget(makeRight());
   all->setStretchFactor(0, 1);
-  all->setSizes({920, 480});
+  all->setSizes({880, 520});
   all->setChildrenCollapsible(false);
   setCentralWidget(all);
   statusBar();
+}
+
+// Canvas over plot, with the readout above and the time strip below.
+QWidget* MainWindow::makeLeft() {
+  canvas_ = new Canvas(document_, this);
+  plot_ = new PlotPane(document_, this);
+  strip_ = new TimeStrip(document_, this);
+  readout_ = new CursorReadout(document_, this);
+  auto* pictures = new QSplitter(Qt::Vertical, this);
+  pictures->addWidget(canvas_);
+  pictures->addWidget(plot_);
+  pictures->setSizes({460, 310});
+  pictures->setStretchFactor(0, 3);
+  pictures->setStretchFactor(1, 2);
+  pictures->setChildrenCollapsible(false);
+  auto* box = new QWidget(this);
+  auto* layout = new QVBoxLayout(box);
+  layout->setContentsMargins(0, 0, 0, 0);
+  layout->setSpacing(0);
+  layout->addWidget(readout_);
+  layout->addWidget(pictures, 1);
+  layout->addWidget(strip_);
+  return box;
+}
+
+// Time, contours, limits, and below them tabs with what there is to look up.
+QWidget* MainWindow::makeRight() {
+  summary_ = new SummaryPanel(document_, this);
+  contours_ = new ContourTable(document_, this);
+  limits_ = new LimitsPanel(document_, this);
+  spots_ = new SpotTable(document_, this);
+  joints_ = new JointPanel(document_, this);
+  import_ = new ImportPanel(document_, this);
+  leftOut_ = new QLabel(this);
+  leftOut_->setObjectName(QStringLiteral("leftOut"));
+  leftOut_->setWordWrap(true);
+  leftOut_->setTextFormat(Qt::PlainText);
+  leftOut_->setStyleSheet(
+      QStringLiteral("background:#fff3d6; color:#5b3a00; padding:4px; border-left:4px solid #E69F00;"));
+  leftOut_->hide();
+  contours_->hide();  // until there are some
+  tabs_ = new QTabWidget(this);
+  tabs_->setObjectName(QStringLiteral("tabs"));
+  tabs_->setDocumentMode(true);
+  tabs_->addTab(spots_, tr("Ti&ght spots"));
+  tabs_->addTab(joints_, tr("&Corners"));
+  tabs_->addTab(import_, tr("&Drawing"));
+  auto* parts = new QSplitter(Qt::Vertical, this);
+  parts->addWidget(contours_);
+  parts->addWidget(limits_);
+  parts->addWidget(tabs_);
+  contours_->setMinimumHeight(54);
+  limits_->setMinimumHeight(150);
+  tabs_->setMinimumHeight(110);
+  parts->setSizes({90, 380, 250});
+  parts->setStretchFactor(0, 0);
+  parts->setStretchFactor(1, 3);
+  parts->setStretchFactor(2, 2);
+  parts->setChildrenCollapsible(false);
+  auto* box = new QWidget(this);
+  box->setMinimumWidth(400);
+  auto* layout = new QVBoxLayout(box);
+  layout->setContentsMargins(0, 0, 0, 0);
+  layout->setSpacing(0);
+  layout->addWidget(summary_);
+  layout->addWidget(leftOut_);
+  layout->addWidget(parts, 1);
+  return box;
 }
 
 void MainWindow::connectDocument() {
@@ -141,22 +163,26 @@ void MainWindow::connectDocument() {
   connect(&document_, &Document::failed, this, &MainWindow::showError);
   for (auto signal : {&Document::plansChanged, &Document::referenceChanged, &Document::chosenChanged})
     connect(&document_, signal, this, &MainWindow::refreshActions);
-  connect(&document_, &Document::limitsChanged, this, &MainWindow::refreshTitle);
-  connect(&document_.undoStack(), &QUndoStack::cleanChanged, this, &MainWindow::refreshTitle);
+  connect(&document_, &Document::limitsChanged, this, [this] {
+    refreshTitle();
+    refreshActions();
+  });
 }
 
 void MainWindow::refreshTitle() {
   const QString drawing =
       document_.isEmpty() ? tr("no drawing") : QString::fromStdString(document_.drawing()->name);
-  setWindowTitle(tr("%1 \u2013 Kappafeed").arg(drawing));
+  const QString changed = document_.limitsAreSaved() ? QString() : tr(" (limits not saved)");
+  setWindowTitle(tr("%1%2 \u2013 Kappafeed").arg(drawing, changed));
 }
 
-// What was left out or mended stays in sight as long as the drawing is open.
+// What was left out stays in sight as long as the drawing is open; the tab has it all.
 void MainWindow::showImport() {
-  QStringList lines;
-  for (const std::string& warning : document_.drawing()->warnings) lines << QString::fromStdString(warning);
-  import_->setText(lines.join(u'\n'));
-  import_->setVisible(!lines.isEmpty());
+  leftOut_->setText(ImportPanel::leftOut(document_));
+  leftOut_->setVisible(!leftOut_->text().isEmpty());
+  const auto notes = document_.drawing()->warnings.size();
+  tabs_->setTabText(2, notes == 0 ? tr("&Drawing") : tr("&Drawing (%1)").arg(notes));
+  contours_->setVisible(document_.contourCount() > 0);
 }
 
 void MainWindow::openDrawing(const QString& path) {
@@ -165,22 +191,46 @@ void MainWindow::openDrawing(const QString& path) {
 }
 
 void MainWindow::chooseDrawing() {
-  const QString path =
-      QFileDialog::getOpenFileName(this, tr("Open drawing"), settings_.value(Key::lastFolder).toString(),
-                                   tr("Drawings (*.dxf *.DXF *.csv *.CSV *.txt *.xy);;All files (*)"));
+  const QString path = QFileDialog::getOpenFileName(
+      this, tr("Open drawing"), settings_.value(Key::lastFolder).toString(),
+      tr("Drawings (*.dxf *.DXF *.svg *.SVG *.csv *.CSV *.txt *.xy);;All files (*)"));
   if (!path.isEmpty()) openDrawing(path);
 }
 
 void MainWindow::chooseLimits() {
-  const QString path = QFileDialog::getOpenFileName(this, tr("Open limits"), document_.limitsPath(),
-                                                    tr("Limits (*.json);;All files (*)"));
-  if (!path.isEmpty()) document_.loadLimits(path);
+  const QString path = QFileDialog::getOpenFileName(
+      this, tr("Open limits"),
+      document_.limitsPath().isEmpty() ? settings_.value(Key::lastFolder).toString() : document_.limitsPath(),
+      tr("Limits (*.json);;All files (*)"));
+  if (path.isEmpty()) return;
+  settings_.set(Key::lastFolder, QFileInfo(path).absolutePath());
+  document_.loadLimits(path);
 }
 
-void MainWindow::saveLimits() {
-  const QString path =
-      QFileDialog::getSaveFileName(this, tr("Save limits"), document_.limitsPath(), tr("Limits (*.json)"));
-  if (!path.isEmpty()) document_.saveLimits(path);
+bool MainWindow::saveLimits(bool elsewhere) {
+  QString path = document_.limitsPath();
+  if (path.isEmpty() || elsewhere) {
+    QString proposed = path;
+    if (proposed.isEmpty())
+      proposed = QDir(settings_.value(Key::lastFolder).toString()).filePath(QStringLiteral("limits.json"));
+    path = QFileDialog::getSaveFileName(this, tr("Save limits"), proposed, tr("Limits (*.json)"));
+    if (path.isEmpty()) return false;
+    if (QFileInfo(path).suffix().isEmpty()) path += QStringLiteral(".json");
+  }
+  if (!document_.saveLimits(path)) return false;
+  statusBar()->showMessage(tr("Saved the limits in %1").arg(path), 10'000);
+  return true;
+}
+
+bool MainWindow::mayLoseLimits() {
+  if (document_.limitsAreSaved()) return true;
+  QMessageBox box(QMessageBox::Question, tr("Save the limits?"),
+                  tr("The limits were changed and are not saved in a file yet."),
+                  QMessageBox::Save | QMessageBox::Discard | QMessageBox::Cancel, this);
+  box.setObjectName(QStringLiteral("saveBox"));
+  box.setDefaultButton(QMessageBox::Save);
+  const int answer = box.exec();
+  return answer == QMessageBox::Discard || (answer == QMessageBox::Save && saveLimits(false));
 }
 
 void MainWindow::exportPoints() {
@@ -197,12 +247,25 @@ void MainWindow::exportPoints() {
     if (answer != QMessageBox::Yes) return;
     request.force = true;
   }
-  QApplication::setOverrideCursor(Qt::WaitCursor);
-  RunControl control;
-  const auto written =
-      pipeline::exportPoints(*document_.drawing(), document_.plansForExport(dialog.onlyChosen()),
-                             document_.limits(), request, control);
-  QApplication::restoreOverrideCursor();
+  // In the background, with a way to stop it; the box appears when it takes a while.
+  auto* progress =
+      new QProgressDialog(tr("Writing %1\u2026").arg(QFileInfo(path).fileName()), tr("Stop"), 0, 0, this);
+  progress->setWindowModality(Qt::WindowModal);
+  progress->setAttribute(Qt::WA_DeleteOnClose);
+  connect(progress, &QProgressDialog::canceled, &exporter_, [this] { exporter_.cancel(); });
+  exporter_.start(
+      [drawing = document_.drawingPtr(), plans = document_.plansForExport(dialog.onlyChosen()),
+       limits = document_.limits(), request](RunControl& control) {
+        return pipeline::exportPoints(*drawing, plans, limits, request, control);
+      },
+      [this, path, progress](const Result<void>& written) {
+        progress->disconnect(&exporter_);
+        progress->close();
+        finishExport(path, written);
+      });
+}
+
+void MainWindow::finishExport(const QString& path, const Result<void>& written) {
   if (!written) {
     showError(QString::fromStdString(written.error().message));
     return;
@@ -221,7 +284,7 @@ void MainWindow::exportPicture(bool plot) {
 }
 
 void MainWindow::copySpots() {
-  QApplication::clipboard()->setText(spots_->asText());
+  QApplication::clipboard()->setText(spots_->spots().asText());
 }
 
 void MainWindow::togglePlay(bool play) {
@@ -229,8 +292,10 @@ void MainWindow::togglePlay(bool play) {
   if (!play || planned == nullptr) {
     playTimer_.stop();
     act_->play->setChecked(false);
+    act_->play->setIcon(QIcon(QStringLiteral(":/kappafeed/icons/play.svg")));
     return;
   }
+  act_->play->setIcon(QIcon(QStringLiteral(":/kappafeed/icons/pause.svg")));
   const double at = document_.cursor() ? planned->plan.schedule.atLength(*document_.cursor()).t : 0.0;
   playFrom_ = at >= planned->plan.time - 1e-6 ? 0.0 : at;
   playClock_.start();
@@ -262,19 +327,26 @@ void MainWindow::dragEnterEvent(QDragEnterEvent* event) {
 }
 
 void MainWindow::dropEvent(QDropEvent* event) {
+  QStringList drawings;
   for (const QUrl& url : event->mimeData()->urls()) {
     if (!url.isLocalFile()) continue;
     event->acceptProposedAction();
-    if (url.toLocalFile().endsWith(QStringLiteral(".json"), Qt::CaseInsensitive)) {
-      document_.loadLimits(url.toLocalFile());
+    const QString path = url.toLocalFile();
+    if (path.endsWith(QStringLiteral(".json"), Qt::CaseInsensitive)) {
+      document_.loadLimits(path);
     } else {
-      openDrawing(url.toLocalFile());
+      drawings << path;
     }
-    return;
   }
+  for (qsizetype i = 1; i < drawings.size(); ++i) emit windowWanted(drawings[i]);
+  if (!drawings.isEmpty()) openDrawing(drawings.front());
 }
 
 void MainWindow::closeEvent(QCloseEvent* event) {
+  if (!mayLoseLimits()) {
+    event->ignore();
+    return;
+  }
   settings_.set(Key::windowGeometry, saveGeometry());
   event->accept();
 }

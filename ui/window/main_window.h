@@ -11,6 +11,7 @@
 
 class QActionGroup;
 class QComboBox;
+class QTabWidget;
 class QLabel;
 class QToolBar;
 
@@ -19,6 +20,8 @@ namespace kf::ui {
 class Canvas;
 class ContourTable;
 class CursorReadout;
+class ImportPanel;
+class JointPanel;
 class LimitsPanel;
 class PlotPane;
 class SpotTable;
@@ -41,6 +44,8 @@ class MainWindow : public QMainWindow {
  signals:
   // After a point list was written, with its path.
   void pointsExported(const QString& path);
+  // More drawings were dropped than one window shows.
+  void windowWanted(const QString& path);
 
  protected:
   void dragEnterEvent(QDragEnterEvent* event) override;
@@ -50,13 +55,17 @@ class MainWindow : public QMainWindow {
  private:
   void makeActions();
   void makeMenus();
+  void makeToolBar();
+  QWidget* makeLeft();
+  QWidget* makeRight();
   void makeLayout();
   void connectDocument();
   void refreshTitle();
   void refreshActions();
   void chooseDrawing();
   void chooseLimits();
-  void saveLimits();
+  bool saveLimits(bool elsewhere);  // false: the user gave up, or it failed
+  bool mayLoseLimits();             // asks when they are not saved
   void exportPoints();
   void exportPicture(bool plot);
   void copySpots();
@@ -64,6 +73,7 @@ class MainWindow : public QMainWindow {
   void advancePlay();
   void showError(const QString& message);
   void showImport();
+  void finishExport(const QString& path, const Result<void>& written);
 
   Document& document_;
   Settings& settings_;
@@ -75,7 +85,11 @@ class MainWindow : public QMainWindow {
   TimeStrip* strip_ = nullptr;
   SummaryPanel* summary_ = nullptr;
   CursorReadout* readout_ = nullptr;
-  QLabel* import_ = nullptr;
+  JointPanel* joints_ = nullptr;
+  ImportPanel* import_ = nullptr;
+  QTabWidget* tabs_ = nullptr;
+  QLabel* leftOut_ = nullptr;
+  Runner<void> exporter_;
   QComboBox *colouring_ = nullptr, *rate_ = nullptr;
   struct Actions;
   std::unique_ptr<Actions> act_;
