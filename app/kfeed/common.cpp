@@ -20,15 +20,44 @@ void write(FILE* stream, std::string_view text) {
   std::fwrite(text.data(), 1, text.size(), stream);
 }
 
+// How many bytes the UTF-8 character at `i` has; 0 when there is none.
+std::size_t characterAt(std::string_view text, std::size_t i) {
+  const auto byte = [&](std::size_t k) { return static_cast<unsigned char>(text[k]); };
+  const std::size_t length = byte(i) < 0x80   ? 1
+                             : byte(i) < 0xC2 ? 0
+                             : byte(i) < 0xE0 ? 2
+                             : byte(i) < 0xF0 ? 3
+                             : byte(i) < 0xF5 ? 4
+                                              : 0;
+  if (length == 0 || i + length > text.size()) return 0;
+  for (std::size_t k = 1; k < length; ++k) {
+    if ((byte(i + k) & 0xC0U) != 0x80U) return 0;
+  }
+  const bool control =
+      byte(i) < 32 || byte(i) == 127 || (byte(i) == 0xC2 && length == 2 && byte(i + 1) < 0xA0);
+  return control ? 0 : length;
+}
+
+// One line for a terminal: what a damaged file brought into a message can neither end the line nor steer it.
+std::string oneLine(std::string_view text) {
+  std::string line;
+  for (std::size_t i = 0; i < text.size();) {
+    const std::size_t n = characterAt(text, i);
+    line += n == 0 ? std::string_view("?") : text.substr(i, n);
+    i += n == 0 ? 1 : n;
+  }
+  return line;
+}
+
 }  // namespace
 
 void Answer::warn(const Request& request, std::string_view text) {
-  if (!request.quiet) err += fmt::format("kfeed: {}\n", text);
+  if (!request.quiet) err += fmt::format("kfeed: {}\n", oneLine(text));
 }
 
 void Answer::fail(const Error& error) {
   code = exitCodeFor(error.code);
-  if (code != kInterrupted) err += fmt::format("kfeed: {}\n", error.message);  // main says it once
+  if (code != kInterrupted) err += fmt::format("kfeed: {}\n", oneLine(error.message));  // main says it once
 }
 
 bool say(const Answer& answer) {

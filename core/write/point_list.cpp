@@ -48,8 +48,8 @@ class Rows {
     out_ += std::to_string(contour_.number);
     for (const auto& [value, digits] : {std::pair{state.s, 8},
                                         {state.t, 10},
-                                        {p.x, 8},
-                                        {p.y, 8},
+                                        {p.x, 10},
+                                        {p.y, 10},
                                         {state.v * 60.0, 6},
                                         {state.a, 4},
                                         {state.j, 2},

@@ -46,7 +46,8 @@ struct PointListHead {
 //
 // Fails     invalidArgument  step is not positive and finite, or asks for more than 50 million rows.
 //           cancelled        by `control`.
-// Accuracy  positions to 1e-7 mm, times to 1e-10 s; t_s and s_mm rise strictly within a contour.
+// Accuracy  positions to 1e-10 mm as written (so that rows 0.1 ms apart can be differenced twice), times to
+// 1e-10 s; t_s and s_mm rise strictly within a contour.
 Result<std::string> pointListText(const PointListHead& head, const std::vector<PointListContour>& contours,
                                   RunControl& control);
 
