@@ -27,6 +27,6 @@ install_packages() {
 # What the programs need to be built and run.
 build_packages=(g++ cmake ninja-build ccache qt6-base-dev qt6-svg-dev libqcustomplot-dev
   libgtest-dev libgmock-dev libbenchmark-dev nlohmann-json3-dev libfmt-dev libpugixml-dev
-  libcli11-dev libpolyclipping-dev pkg-config fonts-dejavu-core dpkg-dev file)
+  libcli11-dev libpolyclipping-dev libocct-data-exchange-dev libtbb-dev pkg-config fonts-dejavu-core dpkg-dev file)
 # What the tests need besides.
 test_packages=(python3 python3-ezdxf python3-numpy python3-scipy locales)

@@ -41,14 +41,28 @@ bool looksLikeSvg(std::string_view bytes) {
   return head.find("<svg") != std::string_view::npos || head.find(":svg") != std::string_view::npos;
 }
 
+bool looksLikeStep(std::string_view bytes) {
+  const std::size_t first = bytes.find_first_not_of(" \t\r\n");
+  return first != std::string_view::npos && bytes.substr(first, 13) == "ISO-10303-21;";
+}
+
+// Lines of 80 columns, numbered in the last seven, the first of them of section S.
+bool looksLikeIges(std::string_view bytes) {
+  const std::size_t end = bytes.find_first_of("\r\n");
+  return end == 80 && bytes[72] == 'S' &&
+         trimmed(bytes.substr(73, 7)).find_first_not_of("01") == std::string_view::npos;
+}
+
 bool looksLikeRows(std::string_view bytes) {
   return bytes.substr(0, 4096).find('\0') == std::string_view::npos;
 }
 
 // Content decides first, in this order; the ending decides between texts that look alike.
-constexpr std::array<Format, 3> kFormats = {{
+constexpr std::array<Format, 5> kFormats = {{
     {"DXF", ".dxf", looksLikeDxf, readDxf},
     {"SVG", ".svg", looksLikeSvg, readSvg},
+    {"STEP", ".step", looksLikeStep, readStep},
+    {"IGES", ".iges", looksLikeIges, readIges},
     {"CSV", ".csv", looksLikeRows, readCsvPoints},
 }};
 
@@ -57,6 +71,8 @@ std::string lowerEnding(const std::string& path) {
   std::transform(ending.begin(), ending.end(), ending.begin(),
                  [](unsigned char c) { return static_cast<char>(c >= 'A' && c <= 'Z' ? c + 32 : c); });
   if (ending == ".svgz") return ".svg";
+  if (ending == ".stp" || ending == ".p21") return ".step";
+  if (ending == ".igs") return ".iges";
   return ending == ".txt" || ending == ".xy" ? ".csv" : ending;
 }
 
@@ -102,7 +118,9 @@ Result<Drawing> readDrawingBytes(std::string_view bytes, const std::string& path
   }
   return Error{
       ErrorCode::unsupported,
-      fmt::format("{} is of a kind that is not read; DXF and SVG drawings and CSV point lists are", name)};
+      fmt::format(
+          "{} is of a kind that is not read; DXF, SVG, STEP and IGES drawings and CSV point lists are",
+          name)};
 }
 
 Result<Drawing> readDrawing(const std::string& path, const ReadOptions& options, RunControl& control) {

@@ -68,4 +68,14 @@ Result<Drawing> readCsvPoints(std::string_view bytes, std::string_view name, con
 Result<Drawing> readSvg(std::string_view bytes, std::string_view name, const ReadOptions& options,
                         RunControl& control);
 
+// STEP (ISO 10303-21) and IGES: flat wires, edges and the edges of flat faces, through the helper process;
+// see brep_client.h for what it may use. The plane that was found is among the warnings.
+//
+// Fails  cannotRead   damaged or cut short; the helper crashed, ran out of time or memory, or is missing.
+//        unsupported  not flat (with the deviation), no edges, a form that is not read.
+Result<Drawing> readStep(std::string_view bytes, std::string_view name, const ReadOptions& options,
+                         RunControl& control);
+Result<Drawing> readIges(std::string_view bytes, std::string_view name, const ReadOptions& options,
+                         RunControl& control);
+
 }  // namespace kf::read
