@@ -48,6 +48,55 @@ std::vector<double> blockSpeeds(const path::Path& path, double period) {
   return speeds;
 }
 
+// What limits on a bend of curvature k (not negative) allow.
+void offerBend(Lowest& lowest, const limits::Limits& limits, double k) {
+  if (!(k > 0.0)) return;
+  if (limits.centripetalAcceleration)
+    lowest.offer(*limits.centripetalAcceleration / k, LimitName::centripetal);
+  if (limits.chordTolerance && limits.blockPeriod)
+    lowest.offerSpeed(chordSpeed(1.0 / k, *limits.chordTolerance, *limits.blockPeriod), LimitName::chord);
+  // A first-order position loop with gain K trails by v/K and cuts a bend short by v^2 / (2 R K^2).
+  if (limits.positionGain && limits.contourError) {
+    lowest.offer(2.0 * *limits.contourError * *limits.positionGain * *limits.positionGain / k,
+                 LimitName::contourError);
+  }
+}
+
+// Curvature at the part u of a cell: cubic Hermite through the values and slopes at its ends, error O(h^4).
+double curvatureInside(const path::Path& path, std::size_t i, double u) {
+  const double h = path.s[i + 1] - path.s[i], w = 1.0 - u;
+  return w * w * (1.0 + 2.0 * u) * path.k[i] + u * u * (3.0 - 2.0 * u) * path.k[i + 1] +
+         h * u * w * (w * path.dk[i] - u * path.dk[i + 1]);
+}
+
+// Between its nodes q runs straight, and a bend that peaks there would be taken too fast: the larger end
+// comes down until the straight line keeps the caps at three inner places; where even the smaller end is too
+// large, both do.
+void keepInside(const path::Path& path, const limits::Limits& limits, Caps& caps, std::size_t i) {
+  constexpr double kEven = 1e-4;  // a curvature that changes less has its ends' caps
+  const double larger = std::max(std::abs(path.k[i]), std::abs(path.k[i + 1]));
+  const auto bendAt = [&](double u) { return std::abs(curvatureInside(path, i, u)); };
+  if (std::abs(path.k[i] - path.k[i + 1]) <= kEven * larger &&
+      std::abs(bendAt(0.5) - larger) <= kEven * larger)
+    return;
+  double& q0 = caps.q[i];
+  double& q1 = caps.q[i + 1];
+  for (double u : {0.25, 0.5, 0.75}) {
+    Lowest inside;
+    offerBend(inside, limits, bendAt(u));
+    if ((1.0 - u) * q0 + u * q1 <= inside.q) continue;
+    const bool first = q0 > q1;
+    const double low = std::min(q0, q1), weight = first ? 1.0 - u : u;
+    if (inside.q < low) {
+      q0 = q1 = inside.q;
+      caps.limitedBy[i] = caps.limitedBy[i + 1] = inside.name;
+    } else {
+      (first ? q0 : q1) = (inside.q - (1.0 - weight) * low) / weight;
+      caps.limitedBy[first ? i : i + 1] = inside.name;
+    }
+  }
+}
+
 }  // namespace
 
 Caps speedCaps(const path::Path& path, const limits::Limits& limits) {
@@ -68,20 +117,12 @@ Caps speedCaps(const path::Path& path, const limits::Limits& limits) {
     if (limits.x.speed && tx > 0.0) lowest.offerSpeed(*limits.x.speed / tx, LimitName::axisSpeedX);
     if (limits.y.speed && ty > 0.0) lowest.offerSpeed(*limits.y.speed / ty, LimitName::axisSpeedY);
     if (limits.blockPeriod) lowest.offerSpeed(blocks[path.segment[i]], LimitName::blockPeriod);
-    if (k > 0.0) {
-      if (limits.centripetalAcceleration)
-        lowest.offer(*limits.centripetalAcceleration / k, LimitName::centripetal);
-      if (limits.chordTolerance && limits.blockPeriod) {
-        lowest.offerSpeed(chordSpeed(1.0 / k, *limits.chordTolerance, *limits.blockPeriod), LimitName::chord);
-      }
-      // A first-order position loop with gain K trails by v/K and cuts a bend short by v^2 / (2 R K^2).
-      if (limits.positionGain && limits.contourError) {
-        lowest.offer(2.0 * *limits.contourError * *limits.positionGain * *limits.positionGain / k,
-                     LimitName::contourError);
-      }
-    }
+    offerBend(lowest, limits, k);
     caps.q[i] = lowest.q;
     caps.limitedBy[i] = lowest.name;
+  }
+  for (std::size_t i = 0; i + 1 < n; ++i) {
+    if (path.breakAfter[i] == path::BreakKind::none) keepInside(path, limits, caps, i);
   }
   return caps;
 }

@@ -17,10 +17,39 @@ struct Bound {
   double level, slope;
 };
 
+// Geometry half-way through a cell, from the values and slopes at its ends (cubic Hermite, error O(h^4)).
+// Where the curvature is even over the cell its ends already bound the middle.
+struct Middle {
+  double tx = 1.0, ty = 0.0, k = 0.0;
+  bool bends = false;
+};
+
+Middle middleOf(const path::Path& path, std::size_t i) {
+  constexpr double kEven = 1e-3;  // relative change of the curvature over a cell
+  const double h = path.s[i + 1] - path.s[i], k0 = path.k[i], k1 = path.k[i + 1];
+  Middle m;
+  m.k = 0.5 * (k0 + k1) + 0.125 * h * (path.dk[i] - path.dk[i + 1]);
+  const double larger = std::max(std::abs(k0), std::abs(k1));
+  m.bends = std::abs(m.k - k0) + std::abs(m.k - k1) > kEven * larger;
+  if (!m.bends) return m;
+  m.tx = 0.5 * (path.tx[i] + path.tx[i + 1]) + 0.125 * h * (-k0 * path.ty[i] + k1 * path.ty[i + 1]);
+  m.ty = 0.5 * (path.ty[i] + path.ty[i + 1]) + 0.125 * h * (k0 * path.tx[i] - k1 * path.tx[i + 1]);
+  const double n = std::hypot(m.tx, m.ty);
+  m.tx /= n;
+  m.ty /= n;
+  return m;
+}
+
 class Cell {
  public:
   Cell(const path::Path& path, const AccelerationLimits& limits, std::size_t i) {
     const double half = 0.5 / (path.s[i + 1] - path.s[i]);
+    const Middle middle = middleOf(path, i);
+    if (middle.bends) {
+      // In the middle q is the mean of both ends: the row is (x''/2 - x'/2h) q0 + (x''/2 + x'/2h) q1.
+      addMiddle(middle.tx * half, -0.5 * middle.k * middle.ty, limits.x);
+      addMiddle(middle.ty * half, 0.5 * middle.k * middle.tx, limits.y);
+    }
     addAxis(path.tx[i] * half, path.tx[i + 1] * half, -path.k[i] * path.ty[i],
             -path.k[i + 1] * path.ty[i + 1], limits.x);
     addAxis(path.ty[i] * half, path.ty[i + 1] * half, path.k[i] * path.tx[i], path.k[i + 1] * path.tx[i + 1],
@@ -98,6 +127,10 @@ class Cell {
     addRow(-t1, n1 + t1, limit);
   }
 
+  void addMiddle(double t, double n, double limit) {
+    if (limit < HUGE_VAL) addRow(n - t, n + t, limit);
+  }
+
   void addRow(double alpha, double beta, double limit) {
     // A coefficient that is rounding against the other counts as none: the row then bounds one end alone.
     if (std::abs(beta) <= 1e-13 * std::abs(alpha)) {
@@ -125,7 +158,7 @@ class Cell {
     return low.level - low.slope * q0;
   }
 
-  std::array<Bound, 6> upper_{}, lower_{};
+  std::array<Bound, 8> upper_{}, lower_{};
   std::size_t above_ = 0, below_ = 0;
   double startAlone_ = HUGE_VAL, endAlone_ = HUGE_VAL;
 };

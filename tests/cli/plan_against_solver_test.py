@@ -4,6 +4,7 @@ import math
 import subprocess
 
 import ezdxf
+import numpy
 
 from driving import BIN, InAFolder
 from linear_program import Problem
@@ -51,7 +52,12 @@ class SecondOrderPlan(InAFolder):
                 self.assertTrue(nodes["closed"])
                 self.assertGreater(len(q), 1900)
                 self.assertAlmostEqual(problem.time(q), nodes["time"], delta=1e-9 * nodes["time"])
-                self.assertLessEqual(problem.excess(q), 1e-9)
+                self.assertLessEqual(problem.excess(q), 1e-5)  # the planner's middles are Hermite, these exact
                 self.assertLessEqual(nodes["time"], fastest * (1 + 1e-3))
                 self.assertLessEqual(nodes["time"], bound * (1 + 1e-3))
-                self.assertLessEqual(nodes["lower_bound"], fastest * (1 + 1e-9))
+                # The planner's caps also hold inside the cells, so they lie at or below those written here; under
+                # the same caps its lower bound is below what the solver finds.
+                caps = numpy.array(nodes["cap_q"])
+                self.assertLessEqual(numpy.max(caps[1:-1] / problem.cap[1:-1]), 1 + 1e-9)
+                problem.cap = numpy.minimum(problem.cap, caps)
+                self.assertLessEqual(nodes["lower_bound"], problem.time(problem.best()) * (1 + 1e-6))

@@ -22,8 +22,9 @@ def read_points(path):
     return {number: numpy.array(points) for number, points in contours.items()}
 
 
-def uses(points, limits):
-    """Largest use of each limit, 1 is the limit itself, from central differences of equally spaced samples.
+def uses(points, limits, sustained=1):
+    """Largest use of each limit, 1 is the limit itself, from central differences of equally spaced samples; with
+    `sustained` the largest that so many neighbouring samples all reach.
 
     Acceleration from positions averages over two steps, so a corner of the motion (a stop, a switch from braking to
     speeding up) shows the mean of both sides: never more than the larger of them.
@@ -43,6 +44,8 @@ def uses(points, limits):
 
     def offer(name, values, limit, scale=1.0):
         if limit is not None:
+            for _ in range(sustained - 1):
+                values = numpy.minimum(values[1:], values[:-1])
             found[name] = float(numpy.max(values, initial=0.0) / (limit * scale))
 
     axes, path = limits["axes"], limits["path"]

@@ -32,10 +32,21 @@ int main(int argc, char** argv) {
   const path::Path& path = *planned->path;
   std::vector<int> breaks;
   for (path::BreakKind kind : path.breakAfter) breaks.push_back(static_cast<int>(kind));
+  std::vector<double> midTx, midTy, midK;  // exact geometry half-way through each cell
+  for (std::size_t i = 0; i + 1 < path.size(); ++i) {
+    const path::Sample middle = path.sample(0.5 * (path.s[i] + path.s[i + 1]));
+    midTx.push_back(middle.tx);
+    midTy.push_back(middle.ty);
+    midK.push_back(middle.k);
+  }
   const nlohmann::json json = {{"s", path.s},
                                {"tx", path.tx},
                                {"ty", path.ty},
                                {"k", path.k},
+                               {"mid_tx", midTx},
+                               {"mid_ty", midTy},
+                               {"mid_k", midK},
+                               {"cap_q", planned->plan.caps.q},
                                {"break_after", breaks},
                                {"q", planned->plan.q},
                                {"time", planned->plan.time},

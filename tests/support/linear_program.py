@@ -1,8 +1,8 @@
 """Plans given nodes with a general LP solver (scipy's HiGHS), and proves how near to the optimum a given plan is.
 
 The unknowns are q = v^2 at the nodes, linear in each cell. The rows are written from the definitions: with q' the slope
-of q in a cell, axis acceleration is t q'/2 + n q at both ends of the cell, t the tangent's component and n that of the
-curvature vector. Time is the convex function T(q) = sum of 2 h / (v_i + v_(i+1)). mm, s.
+of q in a cell, axis acceleration is t q'/2 + n q at both ends and in the middle of the cell, t the tangent's component and n
+that of the curvature vector. Time is the convex function T(q) = sum of 2 h / (v_i + v_(i+1)). mm, s.
 """
 import numpy
 from scipy import sparse
@@ -15,6 +15,9 @@ class Problem:
         tangent = {"X": numpy.array(nodes["tx"]), "Y": numpy.array(nodes["ty"])}
         k = numpy.array(nodes["k"])
         bend = {"X": -k * tangent["Y"], "Y": k * tangent["X"]}
+        middle = {"X": numpy.array(nodes["mid_tx"]), "Y": numpy.array(nodes["mid_ty"])}
+        middle_k = numpy.array(nodes["mid_k"])
+        middle_bend = {"X": -middle_k * middle["Y"], "Y": middle_k * middle["X"]}
         n = len(self.s)
         step = numpy.diff(self.s)
         self.cells = numpy.flatnonzero(step > 0)
@@ -27,6 +30,12 @@ class Problem:
         centripetal = limits["path"].get("centripetal_acceleration_mm_per_s2")
         if centripetal:
             cap = numpy.minimum(cap, centripetal / numpy.maximum(numpy.abs(k), 1e-12))
+        # In each cell q stays below the centripetal cap in the middle as well.
+        if centripetal:
+            for i in numpy.flatnonzero(numpy.diff(self.s) > 0):
+                inside = centripetal / max(abs(middle_k[i]), 1e-12)
+                if inside < min(cap[i], cap[i + 1]):
+                    cap[i] = cap[i + 1] = inside
         cap[[0, -1]] = 0.0
         self.cap = cap
         # Rows |a q_i + b q_(i+1)| <= limit, and equal q on both sides of a break.
@@ -50,6 +59,8 @@ class Problem:
                     weights = {i: -t, i + 1: t}
                     weights[end] += bend[axis][end]
                     add(list(weights.items()), limit)
+                t = middle[axis][i] / (2 * h)
+                add([(i, 0.5 * middle_bend[axis][i] - t), (i + 1, 0.5 * middle_bend[axis][i] + t)], limit)
             if along:
                 add([(i, -0.5 / h), (i + 1, 0.5 / h)], along)
         for i in numpy.flatnonzero(step <= 0):
