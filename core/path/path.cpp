@@ -22,7 +22,7 @@ constexpr double kLengthShare = 0.5, kTurnShare = 0.25, kSwingShare = 0.25;
 constexpr int kLeastCellsBesideRest = 4;
 // Toward a stop cells shrink in proportion to their distance from it, down to this part of the way between
 // stops.
-constexpr double kGrading = 0.15, kGradingFloor = 1e-4;
+constexpr double kGrading = 0.05, kGradingFloor = 1e-4;
 
 // Cumulative number of cells wanted from the start of a stretch, at its fine samples.
 class Density {

@@ -6,6 +6,7 @@
 #include <cmath>
 #include <string>
 
+#include "core/plan/jerk_plan.h"
 #include "core/plan/second_order.h"
 
 namespace kf::plan {
@@ -94,25 +95,32 @@ Result<void> checkMoves(const path::Path& path, const std::vector<double>& q) {
   return {};
 }
 
+Result<void> planAcceleration(const path::Path& path, const limits::Limits& limits,
+                              const std::vector<double>& capQ, Plan& plan, RunControl& control) {
+  SecondOrder solution = solveSecondOrder(path, capQ, accelerationLimits(limits));
+  plan.q = std::move(solution.q);
+  if (auto moves = checkMoves(path, plan.q); !moves) return moves;
+  if (control.isCancelled()) return Error{ErrorCode::cancelled, "cancelled"};
+  nameNodes(path, limits, plan);
+  plan.schedule = scheduleOf(path, plan);
+  plan.lowerBound = travelTime(path, solution.envelope);
+  return {};
+}
+
 }  // namespace
 
 Result<Plan> makePlan(const path::Path& path, const limits::Limits& limits, const Options& options,
                       RunControl& control) {
   if (auto valid = limits::validateForPlan(limits); !valid) return valid.error();
-  if (options.law == Law::jerk)
-    return Error{ErrorCode::unsupported,
-                 "jerk-limited plans are not available yet; use the acceleration law"};
   if (control.isCancelled()) return Error{ErrorCode::cancelled, "cancelled"};
   Plan plan;
   plan.caps = speedCaps(path, limits);
-  SecondOrder solution = solveSecondOrder(path, capsWithStops(path, plan.caps), accelerationLimits(limits));
-  plan.q = std::move(solution.q);
-  if (auto moves = checkMoves(path, plan.q); !moves) return moves.error();
-  if (control.isCancelled()) return Error{ErrorCode::cancelled, "cancelled"};
-  nameNodes(path, limits, plan);
-  plan.schedule = scheduleOf(path, plan);
+  std::vector<double> capQ = capsWithStops(path, plan.caps);
+  auto done = options.law == Law::jerk ? planJerk(path, limits, std::move(capQ), plan, control)
+                                       : planAcceleration(path, limits, capQ, plan, control);
+  if (!done) return done.error();
   plan.time = plan.schedule.time();
-  plan.lowerBound = std::min(plan.time, travelTime(path, solution.envelope));
+  plan.lowerBound = std::min(plan.time, plan.lowerBound);
   plan.timeByLimit = plan.schedule.timeByLimit();
   control.report(1.0);
   return plan;
