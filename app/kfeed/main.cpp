@@ -108,7 +108,6 @@ int checkPlan(const CLI::App& verb, const Request& request) {
   for (const char* name : {"--program", "--report", "--job"}) {
     if (verb.count(name) > 0) return notYet(name);
   }
-  if (request.law == "jerk") return notYet("--law jerk");
   if (request.isBatch() && request.outputFolder.empty() &&
       !(request.points.empty() && request.summary.empty())) {
     return usage("several drawings can't share an output file; name a folder with --output-folder");

@@ -23,6 +23,8 @@ constexpr int kLeastCellsBesideRest = 4;
 // Toward a stop cells shrink in proportion to their distance from it, down to this part of the way between
 // stops.
 constexpr double kGrading = 0.05, kGradingFloor = 1e-4;
+// A path of many stops shares its nodes: beyond so many, cells grow with the number of stops.
+constexpr double kStopsAtFullGrading = 20.0, kCoarsestGrading = 0.6;
 
 // Cumulative number of cells wanted from the start of a stretch, at its fine samples.
 class Density {
@@ -40,6 +42,8 @@ class Density {
       if (stretch.breakBefore == BreakKind::tangentBreak) stops_.push_back(stretch.start);
     }
     stops_.push_back(all.length);
+    grading_ = std::clamp(kGrading * static_cast<double>(stops_.size()) / kStopsAtFullGrading, kGrading,
+                          kCoarsestGrading);
   }
 
   bool besideRest(const Stretch& stretch) const {
@@ -83,7 +87,7 @@ class Density {
       const double left = std::log1p(std::max(0.0, std::min(x, middle) - low) / floor);
       const double right =
           std::log1p((high - middle) / floor) - std::log1p((high - std::max(x, middle)) / floor);
-      return (left + right) / kGrading;
+      return (left + right) / grading_;
     };
     const double base = graded(0.0);
     for (double at : places) {
@@ -101,6 +105,7 @@ class Density {
   const Options& options_;
   double target_ = 0.0, perLength_ = 0.0, perTurn_ = 0.0, perSwing_ = 0.0;
   std::vector<double> stops_;
+  double grading_ = kGrading;
 };
 
 void addNode(Path& path, const contour::Contour& contour, std::uint32_t segment, double u, double s,

@@ -156,9 +156,9 @@ Result<PlannedContour> planContour(const PreparedContour& prepared, const limits
   return planned;
 }
 
-plan::Law lawFor(const limits::Limits& /*limits*/, const PlanOptions& options) {
-  // Until jerk-limited plans exist, the default is the law that does.
-  return options.law.value_or(plan::Law::acceleration);
+plan::Law lawFor(const limits::Limits& limits, const PlanOptions& options) {
+  const bool jerk = limits.x.jerk || limits.y.jerk || limits.tangentialJerk;
+  return options.law.value_or(jerk ? plan::Law::jerk : plan::Law::acceleration);
 }
 
 }  // namespace kf::pipeline
