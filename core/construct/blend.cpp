@@ -177,7 +177,7 @@ class Blender {
     made.segment = report_.driven.segments.size();
     curve::Curve blend = bezierCurve(corner->poles);
     made.length = curve::totalLength(blend);
-    report_.driven.segments.push_back({std::move(blend), "blend"});
+    report_.driven.segments.push_back({std::move(blend), std::string(contour::kBlendSource)});
     report_.largestDeviation = std::max(report_.largestDeviation, made.deviation);
     ++report_.blended;
     if (made.crowded) ++report_.crowded;

@@ -4,12 +4,16 @@
 
 #include <cstddef>
 #include <string>
+#include <string_view>
 #include <vector>
 
 #include "core/base/result.h"
 #include "core/curve/curve.h"
 
 namespace kf::contour {
+
+// The source of a segment that was put in to blend a joint.
+inline constexpr std::string_view kBlendSource = "blend";
 
 // One curve with where it came from (the entity's kind and line in its file), for messages.
 struct Segment {

@@ -169,6 +169,8 @@ Result<Stretches> findStretches(const contour::Contour& contour, const Options& 
   Stretches all;
   const std::vector<contour::Joint> joints =
       contour::findJoints(contour, {options.angleTolerance, options.curvatureTolerance});
+  const double least = std::min(1e-6, 1e-9 * contour::length(contour));
+  BreakKind carried = BreakKind::none;
   for (std::size_t i = 0; i < contour.segments.size(); ++i) {
     if (control.isCancelled()) return Error{ErrorCode::cancelled, "cancelled"};
     const contour::Segment& segment = contour.segments[i];
@@ -193,7 +195,13 @@ Result<Stretches> findStretches(const contour::Contour& contour, const Options& 
       }
       if (auto sampled = sampleStretch(segment.curve, stretch); !sampled)
         return namedAfter(segment, sampled.error());
-      if (!(stretch.length > 0.0)) continue;  // doubled poles: no way to travel
+      // Doubled poles, or what rounding left between two neighbours: no way to travel. What breaks there still counts.
+      if (!(stretch.length > least)) {
+        carried = std::max(carried, stretch.breakBefore);
+        continue;
+      }
+      stretch.breakBefore = std::max(stretch.breakBefore, carried);
+      carried = BreakKind::none;
       all.length += stretch.length;
       all.turn += stretch.turn.back();
       all.swing += stretch.swing.back();

@@ -33,17 +33,33 @@ double chordSpeed(double radius, double error, double period) {
 }
 
 // Lines and arcs are one block each; the control can't start a new block sooner than one period after the
-// last.
+// last. A blend belongs half to the block before and half to the one after: blocks part where the drawing's
+// entities do. A spline is written as many blocks, whose length the chord tolerance sets.
 std::vector<double> blockSpeeds(const path::Path& path, double period) {
   const auto& segments = path.contour().segments;
-  std::vector<double> lengths(segments.size(), 0.0);
+  const std::size_t n = segments.size();
+  std::vector<double> lengths(n, 0.0), speeds(n, std::sqrt(kNoCap));
   for (std::size_t i = 0; i + 1 < path.size(); ++i) {
     if (path.segment[i] == path.segment[i + 1]) lengths[path.segment[i]] += path.s[i + 1] - path.s[i];
   }
-  std::vector<double> speeds(segments.size(), std::sqrt(kNoCap));
-  for (std::size_t i = 0; i < segments.size(); ++i) {
-    const curve::Curve& c = segments[i].curve;
-    if (c.asLine() != nullptr || c.asArc() != nullptr) speeds[i] = lengths[i] / period;
+  const auto isBlend = [&](std::size_t i) { return segments[i].source == contour::kBlendSource; };
+  const auto isBlock = [&](std::size_t i) {
+    return segments[i].curve.asLine() != nullptr || segments[i].curve.asArc() != nullptr;
+  };
+  const auto cap = [&](std::size_t i, double length) { speeds[i] = std::min(speeds[i], length / period); };
+  const auto half = [&](std::size_t i) { return isBlend(i) ? 0.5 * lengths[i] : 0.0; };
+  for (std::size_t i = 0; i < n; ++i) {
+    const bool open = !path.closed;
+    const std::size_t before = i > 0 ? i - 1 : open ? n : n - 1, after = i + 1 < n ? i + 1 : open ? n : 0;
+    if (isBlock(i)) {
+      const double length = lengths[i] + (before < n ? half(before) : 0.0) + (after < n ? half(after) : 0.0);
+      cap(i, length);
+      if (before < n && isBlend(before)) cap(before, length);
+      if (after < n && isBlend(after)) cap(after, length);
+    } else if (isBlend(i) && after < n && isBlend(after) && after != i) {
+      cap(i, half(i) + half(after));  // the entity between was used up
+      cap(after, half(i) + half(after));
+    }
   }
   return speeds;
 }
