@@ -20,6 +20,8 @@ using curve::Side;
 // Shares of the nodes that follow length, turning and the slope of the curvature.
 constexpr double kLengthShare = 0.5, kTurnShare = 0.25, kSwingShare = 0.25;
 constexpr int kLeastCellsBesideRest = 4;
+// Under a jerk limit a bend that comes and goes within one cell would be seen at its ends only.
+constexpr int kLeastCellsInBend = 3;
 // Toward a stop cells shrink in proportion to their distance from it, down to this part of the way between
 // stops.
 constexpr double kGrading = 0.05, kGradingFloor = 1e-4;
@@ -188,6 +190,7 @@ Result<Path> buildPath(const contour::Contour& contour, const Options& options, 
     const std::vector<double> cells = density.along(stretch, u, s);
     double count = std::max(1.0, std::round(cells.back()));
     if (density.besideRest(stretch)) count = std::max<double>(count, kLeastCellsBesideRest);
+    if (options.gradeAtStops && stretch.swing.back() > 0.0) count = std::max<double>(count, kLeastCellsInBend);
     addStretch(path, *shared, stretch, equalShares(u, cells, static_cast<std::size_t>(count)));
     done += stretch.length;
     control.report(done / stretches->length);
