@@ -242,13 +242,17 @@ void Document::replan() {
   preparer_.cancel();
   std::size_t nodes = 0;
   for (const pipeline::PreparedContour& one : prepared_) nodes += one.path->size();
-  if (nodes > kNodesAtOnce || law() == plan::Law::jerk) {
+  if (nodes > kNodesAtOnce) {
     planInBackground();
     return;
   }
   planner_.cancel();
   RunControl control;
-  takePlans(planAll(prepared_, limits_, choices_, control));
+  pipeline::PlanOptions quick = choices_;
+  quick.law = plan::Law::acceleration;
+  refining_ = law() == plan::Law::jerk;
+  takePlans(planAll(prepared_, limits_, quick, control));
+  if (refining_ && planError_.isEmpty()) planInBackground();
 }
 
 // A plan under way is shown before the next one starts, so that a drag shows something; unless it takes long.
@@ -263,6 +267,7 @@ void Document::planInBackground() {
                      RunControl& control) { return planAll(prepared, limits, choices, control); },
                  [this](Result<Planned> planned) {
                    const bool again = planAgain_;
+                   refining_ = false;
                    takePlans(std::move(planned));
                    if (again) replan();
                  });
@@ -303,7 +308,7 @@ void Document::takePlans(Result<Planned> planned) {
   emit planningChanged();
   emit plansChanged();
   emit pricesChanged();
-  if (usable && planError_.isEmpty()) startPrices();
+  if (usable && planError_.isEmpty() && !refining_) startPrices();
 }
 
 void Document::startPrices() {

@@ -77,6 +77,8 @@ class Document : public QObject {
   const pipeline::PreparedContour* preparedAt(int index) const;
   double totalTime() const;
   double totalLowerBound() const;
+  // True while a quick plan is shown (accelerations only) and the jerk-limited one is worked out behind it.
+  bool isRefining() const { return refining_; }
   QString planError() const { return planError_; }
   // Paths or plans are being worked out; what is shown belongs to the values before.
   bool isPlanning() const { return preparer_.isBusy() || planner_.isBusy(); }
@@ -135,6 +137,7 @@ class Document : public QObject {
   void prepareAgain();
   void planInBackground();
   void takePlans(Result<Planned> planned);
+  bool refining_ = false;
   void startPrices();
 
   DrawingPtr drawing_;

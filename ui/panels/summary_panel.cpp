@@ -67,6 +67,8 @@ void SummaryPanel::refresh() {
   const bool planned = time > 0.0;
   time_->setText(planned ? timeText(time) : kNothing);
   time_->setVisible(planned || !document_.isEmpty());
+  working_->setText(document_.isRefining() ? tr("quick plan without jerk; refining\u2026")
+                                           : tr("working\u2026"));
   working_->setVisible(document_.isPlanning());
   if (planned) {
     const double gap = least > 0.0 ? 100.0 * (time / least - 1.0) : 0.0;
