@@ -29,4 +29,4 @@ build_packages=(g++ cmake ninja-build ccache qt6-base-dev qt6-svg-dev libqcustom
   libgtest-dev libgmock-dev libbenchmark-dev nlohmann-json3-dev libfmt-dev libpugixml-dev
   libcli11-dev libpolyclipping-dev libocct-data-exchange-dev libtbb-dev pkg-config fonts-dejavu-core dpkg-dev file)
 # What the tests need besides.
-test_packages=(libocct-modeling-data-dev python3 python3-ezdxf python3-numpy python3-scipy locales)
+test_packages=(libocct-modeling-data-dev python3 python3-ezdxf python3-numpy python3-scipy bootstrap-icons gmsh-doc locales)

@@ -191,9 +191,10 @@ void MainWindow::openDrawing(const QString& path) {
 }
 
 void MainWindow::chooseDrawing() {
-  const QString path = QFileDialog::getOpenFileName(
-      this, tr("Open drawing"), settings_.value(Key::lastFolder).toString(),
-      tr("Drawings (*.dxf *.DXF *.svg *.SVG *.csv *.CSV *.txt *.xy);;All files (*)"));
+  const QString path =
+      QFileDialog::getOpenFileName(this, tr("Open drawing"), settings_.value(Key::lastFolder).toString(),
+                                   tr("Drawings (*.dxf *.DXF *.svg *.SVG *.step *.STEP *.stp *.STP *.igs "
+                                      "*.IGS *.iges *.IGES *.csv *.CSV *.txt *.xy);;All files (*)"));
   if (!path.isEmpty()) openDrawing(path);
 }
 

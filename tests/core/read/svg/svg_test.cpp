@@ -449,6 +449,19 @@ TEST(SvgFile, CutAnywhereIsRefused) {
   for (std::size_t n = 0; n < end; ++n) EXPECT_FALSE(read(text.substr(0, n)).ok()) << n;
 }
 
+TEST(SvgSample, CutAnywhereIsRefused) {
+  std::ifstream file(std::string(KF_SOURCE_DIR) + "/samples/name_board.svg", std::ios::binary);
+  std::stringstream all;
+  all << file.rdbuf();
+  const std::string text = all.str();
+  const std::size_t end = text.rfind('>') + 1;
+  auto drawing = read(text.substr(0, end));
+  ASSERT_TRUE(drawing.ok()) << drawing.error().message;
+  EXPECT_TRUE(drawing->skipped.empty());
+  EXPECT_EQ(drawing->unitName, "mm");
+  for (std::size_t n = 0; n < end; ++n) EXPECT_FALSE(read(text.substr(0, n)).ok()) << n;
+}
+
 TEST(SvgFile, CanBeCancelled) {
   std::string text;
   for (int i = 0; i < 3000; ++i) text += "<path d='M0 0h1'/>";
