@@ -37,7 +37,8 @@ const std::string kVersionText = std::string("kfeed ") + KAPPAFEED_VERSION;
 
 void commonOptions(CLI::App& verb, Request& request) {
   verb.set_version_flag("--version", kVersionText);
-  verb.add_option("DRAWING", request.drawings, "drawings to read (DXF, or CSV points); - for standard input")
+  verb.add_option("DRAWING", request.drawings,
+                  "drawings to read (DXF, SVG, STEP, IGES, or CSV points); - for standard input")
       ->required();
   verb.add_flag("--json", request.json, "one JSON document on standard output, and nothing else there");
   verb.add_option("--units", request.units, "unit of a drawing that does not say: mm or in")

@@ -44,7 +44,7 @@ class Drawings(InAFolder):
             damaged = bytearray(whole)
             for _ in range(marks.randrange(1, 20)):
                 damaged[marks.randrange(len(damaged))] = marks.randrange(256)
-            run = kfeed("plan", "-", "--limits", ROUTER, "--units", "mm", "--json", stdin=bytes(damaged))
+            run = kfeed("plan", "-", "--limits", ROUTER, "--units", "mm", "--json", "--law", "acceleration", stdin=bytes(damaged))
             self.assertIn(run.code, (0, 1, 3), run.err)
             if run.code == 0:
                 json.loads(run.out)

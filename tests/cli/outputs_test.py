@@ -66,7 +66,7 @@ class Streams(InAFolder):
     def test_a_full_standard_output_is_exit_4_and_no_crash(self):
         for arguments in (["--json"], ["--points", "-"], ["--summary", "-"]):
             with self.subTest(arguments=arguments), open("/dev/full", "wb") as full:
-                run = kfeed("plan", GASKET, "--limits", ROUTER, *arguments, stdout=full)
+                run = kfeed("plan", GASKET, "--limits", ROUTER, "--law", "acceleration", *arguments, stdout=full)
                 self.assertEqual(run.code, 4, run.err)
                 self.assertNotIn("terminate", run.err)
         with open("/dev/full", "wb") as full:
@@ -85,10 +85,10 @@ class Sameness(InAFolder):
                                capture_output=True, check=False)
         self.assertEqual(comma.stdout, b"1,5", "the locale made here is not in force")
         for arguments in (["--points", "-"], ["--json"], ["--points", "-", "--sample", "chord"]):
-            plain = kfeed("plan", GASKET, "--limits", ROUTER, *arguments, environment={"LC_ALL": "C"}).out
+            plain = kfeed("plan", GASKET, "--limits", ROUTER, "--contour", "1-3", *arguments, environment={"LC_ALL": "C"}).out
             self.assertGreater(len(plain), 1000)
             for name in ("de_DE", "tr_TR", "ar_EG", "fr_FR"):
-                there = kfeed("plan", GASKET, "--limits", ROUTER, *arguments,
+                there = kfeed("plan", GASKET, "--limits", ROUTER, "--contour", "1-3", *arguments,
                               environment={"LC_ALL": name + ".UTF-8", "LOCPATH": str(self.folder)}).out
                 self.assertEqual(plain, there, name)
 
@@ -98,10 +98,10 @@ class Sameness(InAFolder):
             out = self.folder / str(threads)
             out.mkdir()
             run = kfeed("plan", *sorted(SAMPLES.glob("*.dxf")), "--units", "mm", "--limits", ROUTER, "--threads", threads,
-                        "--output-folder", out, "--points", ".csv", "--summary", ".json", "--step", "0.01")
+                        "--law", "acceleration", "--output-folder", out, "--points", ".csv", "--summary", ".json", "--step", "0.01")
             self.assertEqual(run.code, 0, run.err)
             made[threads] = ({p.name: p.read_bytes() for p in out.iterdir()}, run.out)
         self.assertEqual(made[1], made[2])
         self.assertEqual(made[1], made[5])
-        one = [kfeed("plan", GASKET, "--limits", ROUTER, "--json", "--threads", n).out for n in (1, 4)]
+        one = [kfeed("plan", GASKET, "--limits", ROUTER, "--contour", "1-3", "--json", "--threads", n).out for n in (1, 4)]
         self.assertEqual(one[0], one[1])

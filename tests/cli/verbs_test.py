@@ -94,7 +94,7 @@ class Inspect(InAFolder):
 
 class Plan(InAFolder):
     def test_summary_holds_together(self):
-        run = kfeed("plan", GASKET, "--limits", ROUTER, "--json")
+        run = kfeed("plan", GASKET, "--limits", ROUTER, "--json", "--law", "acceleration")
         document = json.loads(run.out)
         self.assertEqual(run.code, 0)
         self.assertAlmostEqual(document["total_time_s"], sum(c["time_s"] for c in document["contours"]), 9)
@@ -111,14 +111,14 @@ class Plan(InAFolder):
     def test_set_changes_one_limit_and_limits_come_from_standard_input_too(self):
         time_at = {}
         for feed in (3000, 9000):
-            run = kfeed("plan", GASKET, "--limits", "-", "--json", "--set", f"path.feed_mm_per_min={feed}",
+            run = kfeed("plan", GASKET, "--limits", "-", "--json", "--law", "acceleration", "--set", f"path.feed_mm_per_min={feed}",
                         "--set", "path.centripetal_acceleration_mm_per_s2=none", stdin=ROUTER.read_bytes())
             time_at[feed] = json.loads(run.out)["total_time_s"]
         self.assertGreater(time_at[3000], 1.5 * time_at[9000])
 
     def test_exact_joints_cost_a_stop_at_every_tangent_break(self):
         rib = SAMPLES / "rib_template.dxf"
-        blend, exact = (json.loads(kfeed("plan", rib, "--limits", ROUTER, "--json", "--joints", j).out)
+        blend, exact = (json.loads(kfeed("plan", rib, "--limits", ROUTER, "--json", "--law", "acceleration", "--joints", j).out)
                         for j in ("blend", "exact"))
         self.assertGreater(exact["total_time_s"], blend["total_time_s"])
         self.assertLessEqual(blend["contours"][0]["driven"]["largest_deviation_mm"], 0.02)
@@ -133,14 +133,14 @@ class Plan(InAFolder):
         out.mkdir()
         cam = SAMPLES / "cam_plate.dxf"
         run = kfeed("plan", GASKET, self.folder / "missing.dxf", cam, "--limits", ROUTER, "--threads", 2,
-                    "--output-folder", out, "--points", ".csv", "--summary", ".json")
+                    "--law", "acceleration", "--output-folder", out, "--points", ".csv", "--summary", ".json")
         self.assertEqual(run.code, 3)
         self.assertEqual([line.split(":")[0] for line in run.out.splitlines()], ["gasket.dxf", "cam_plate.dxf"])
         self.assertIn("missing.dxf", run.err)
         self.assertEqual(sorted(p.name for p in out.iterdir()),
                          ["cam_plate.csv", "cam_plate.json", "gasket.csv", "gasket.json"])
         # The same bytes as a run alone.
-        alone = kfeed("plan", cam, "--limits", ROUTER, "--points", "-")
+        alone = kfeed("plan", cam, "--limits", ROUTER, "--law", "acceleration", "--points", "-")
         self.assertEqual((out / "cam_plate.csv").read_text(), alone.out)
 
     def test_drawings_whose_outputs_would_share_a_name_are_refused(self):
