@@ -86,7 +86,7 @@ class DxfReader {
     }
     if (!section_.empty()) return damagedHere("EOF inside section " + section_);
     if (!sawEntities_) return damaged("has no ENTITIES section; the file is damaged or holds no drawing");
-    if (auto done = expand(entities_, nullptr, 0, 0); !done) return done.error();
+    if (auto done = expandAll(); !done) return done.error();
     return std::move(drawing_);
   }
 
@@ -103,29 +103,23 @@ class DxfReader {
 
   // Gathers the groups up to the next group 0. HEADER variables arrive as one record whose type is SECTION.
   Result<bool> nextRecord() {
-    if (!pending_) {
-      auto first = stream_.next();
-      if (!first) return first.error();
-      if (!*first) return false;
-      pending_ = **first;
-      if (pending_->code != 0) {
+    if (!hasPending_) {
+      auto first = stream_.next(pending_);
+      if (!first || !*first) return first;
+      if (pending_.code != 0) {
         return damaged(fmt::format("{}: begins with group {} instead of 0; it is not a DXF file",
-                                   pending_->place(), pending_->code));
+                                   pending_.place(), pending_.code));
       }
     }
-    record_.head = *pending_;
-    record_.type = trimmed(pending_->value);
+    record_.head = pending_;
+    record_.type = trimmed(pending_.value);
     record_.groups.clear();
-    pending_.reset();
     for (;;) {
-      auto group = stream_.next();
-      if (!group) return group.error();
-      if (!*group) return true;
-      if ((**group).code == 0) {
-        pending_ = **group;
-        return true;
-      }
-      record_.groups.push_back(**group);
+      auto more = stream_.next(pending_);
+      if (!more) return more;
+      hasPending_ = *more && pending_.code == 0;
+      if (!*more || hasPending_) return true;
+      record_.groups.push_back(pending_);
     }
   }
 
@@ -280,11 +274,18 @@ class DxfReader {
     return steps_ > 4 * options_.maxCurves ? Result<void>(tooMany()) : Result<void>();
   }
 
+  // What the drawing itself holds is not needed afterwards: its curves move.
+  Result<void> expandAll() {
+    std::size_t curves = 0;
+    for (const Item& item : entities_) curves += item.content.curves.size();
+    drawing_.curves.reserve(std::min(curves, options_.maxCurves));
+    return expand(entities_, nullptr, 0, 0);
+  }
+
   // Copies items into the drawing, blocks expanded; `map` is null outside blocks. Layer 0 in a block stands
   // for the layer of its insert.
-  Result<void> expand(const std::vector<Item>& items, const Affine2* map, std::size_t insertLayer,
-                      int depth) {
-    for (const Item& item : items) {
+  Result<void> expand(std::vector<Item>& items, const Affine2* map, std::size_t insertLayer, int depth) {
+    for (Item& item : items) {
       if (auto counted = countStep(); !counted) return counted;
       const std::size_t layer = item.layer == 0 && depth > 0 ? insertLayer : item.layer;
       if (!item.content.ignoreReason.empty()) {
@@ -314,14 +315,14 @@ class DxfReader {
     return {};
   }
 
-  Result<void> addCurves(const Item& item, const Affine2* map, std::size_t layerIndex) {
+  Result<void> addCurves(Item& item, const Affine2* map, std::size_t layerIndex) {
     Layer& layer = layers_[layerIndex];
     if (drawing_.curves.size() + item.content.curves.size() > options_.maxCurves) return tooMany();
     const std::size_t before = drawing_.curves.size();
     std::string source = fmt::format("{} at {} {}", item.type, isBinary_ ? "byte" : "line", item.at);
-    for (const curve::Curve& c : item.content.curves) {
-      drawing_.curves.push_back(
-          {map != nullptr ? c.transformed(*map) : c, layer.name, source, drawing_.curves.size() > before});
+    for (curve::Curve& c : item.content.curves) {
+      drawing_.curves.push_back({map != nullptr ? c.transformed(*map) : std::move(c), layer.name, source,
+                                 drawing_.curves.size() > before});
       if (!isUsable(drawing_.curves.back().curve)) {
         drawing_.curves.resize(before, {curve::Line{}, "", "", false});
         note(drawing_.skipped, item.type, "its size or place is out of range", placeOf(item));
@@ -372,9 +373,9 @@ class DxfReader {
   Drawing drawing_;
   LayerTable layers_;
   Record record_;
-  std::optional<Group> pending_;
+  Group pending_;
   std::string section_, codePage_;
-  bool isBinary_ = false, sawEntities_ = false;
+  bool isBinary_ = false, sawEntities_ = false, hasPending_ = false;
   std::map<std::string, Block, std::less<>> blocks_;
   Block* block_ = nullptr;
   std::optional<OpenPolyline> polyline_;

@@ -150,7 +150,9 @@ EntityContent lwPolylineOf(const Record& record, Fields& f, const Affine2& map) 
   }
   EntityContent c;
   c.curves = polylineCurves(vertices, (f.whole(70) & 1) != 0);
-  for (Curve& piece : c.curves) piece = piece.transformed(map);
+  if (map.xx != 1.0) {
+    for (Curve& piece : c.curves) piece = piece.transformed(map);
+  }
   if (c.curves.empty()) return skippedFor("it has fewer than two different vertices");
   return c;
 }

@@ -59,8 +59,8 @@ std::string Group::place() const {
 }
 
 std::string Group::shown() const {
-  if (kind == Kind::real) return fmt::format("{}", real);
-  if (kind == Kind::whole) return fmt::format("{}", whole);
+  if (kind == Kind::real) return fmt::format("{}", real());
+  if (kind == Kind::whole) return fmt::format("{}", whole());
   return toUtf8(value.substr(0, 40));
 }
 
@@ -98,27 +98,26 @@ bool GroupStream::takeLine(std::string_view& text) {
   return true;
 }
 
-Result<std::optional<Group>> GroupStream::nextText() {
+Result<bool> GroupStream::nextText(Group& group) {
   for (;;) {
     std::string_view code;
-    if (!takeLine(code)) return std::optional<Group>();
+    if (!takeLine(code)) return false;
     const auto parsed = parseInteger(code);
     if (!parsed || *parsed < -5 || *parsed > 1071) {
       // Blank lines at the very end do no harm.
       if (trimmed(code).empty() && bytes_.find_first_not_of("\r\n\t ", at_) == std::string_view::npos) {
         at_ = bytes_.size();
-        return std::optional<Group>();
+        return false;
       }
       return Error{
           ErrorCode::cannotRead,
           fmt::format("{} line {}: '{}' is not a DXF group code; the file is damaged or not DXF text", name_,
                       line_, toUtf8(code.substr(0, 40)))};
     }
-    Group group;
     if (!takeLine(group.value)) return cutShort();
-    group.code = static_cast<int>(*parsed);
+    group.code = static_cast<std::int16_t>(*parsed);
     group.at = line_;
-    if (group.code != 999) return std::optional<Group>(group);
+    if (group.code != 999) return true;
   }
 }
 
@@ -156,21 +155,22 @@ bool GroupStream::takeValue(Group& group) {
   if (!bits) return false;
   if (stored == Stored::real) {
     group.kind = Group::Kind::real;
-    group.real = std::bit_cast<double>(*bits);
+    group.bits = *bits;
     return true;
   }
   group.kind = Group::Kind::whole;
-  group.whole = stored == Stored::byte      ? static_cast<std::int64_t>(*bits)
-                : stored == Stored::short16 ? static_cast<std::int16_t>(*bits)
-                : stored == Stored::long32  ? static_cast<std::int32_t>(*bits)
-                                            : static_cast<std::int64_t>(*bits);
+  const std::int64_t whole = stored == Stored::byte      ? static_cast<std::int64_t>(*bits)
+                             : stored == Stored::short16 ? static_cast<std::int16_t>(*bits)
+                             : stored == Stored::long32  ? static_cast<std::int32_t>(*bits)
+                                                         : static_cast<std::int64_t>(*bits);
+  group.bits = static_cast<std::uint64_t>(whole);
   return true;
 }
 
-Result<std::optional<Group>> GroupStream::nextBinary() {
+Result<bool> GroupStream::nextBinary(Group& group) {
   for (;;) {
-    if (at_ >= bytes_.size()) return std::optional<Group>();
-    Group group;
+    if (at_ >= bytes_.size()) return false;
+    group = {};
     group.binary = true;
     auto code = takeBytes(wideCodes_ ? 2 : 1);
     if (code && !wideCodes_ && *code == 255) code = takeBytes(2);
@@ -183,7 +183,7 @@ Result<std::optional<Group>> GroupStream::nextBinary() {
           fmt::format("{} byte {}: {} is not a DXF group code; the file is damaged", name_, at_, group.code)};
     }
     if (!takeValue(group)) return cutShort();
-    if (group.code != 999) return std::optional<Group>(group);
+    if (group.code != 999) return true;
   }
 }
 
@@ -194,9 +194,9 @@ const Group* Record::find(int code) const {
 }
 
 Result<double> numberOf(const Group& group, std::string_view name) {
-  if (group.kind == Group::Kind::whole) return static_cast<double>(group.whole);
+  if (group.kind == Group::Kind::whole) return static_cast<double>(group.whole());
   const auto value =
-      group.kind == Group::Kind::real ? std::optional<double>(group.real) : parseNumber(group.value);
+      group.kind == Group::Kind::real ? std::optional<double>(group.real()) : parseNumber(group.value);
   if (value && std::isfinite(*value)) return *value;
   return Error{ErrorCode::cannotRead,
                fmt::format("{} {}: group {} must be a number, not '{}'; correct it or get a whole copy", name,
@@ -204,7 +204,7 @@ Result<double> numberOf(const Group& group, std::string_view name) {
 }
 
 Result<long long> integerOf(const Group& group, std::string_view name) {
-  if (group.kind == Group::Kind::whole) return static_cast<long long>(group.whole);
+  if (group.kind == Group::Kind::whole) return static_cast<long long>(group.whole());
   if (group.kind == Group::Kind::text) {
     if (const auto value = parseInteger(group.value)) return *value;
   }

@@ -2,6 +2,7 @@
 // No units here.
 #pragma once
 
+#include <bit>
 #include <cstddef>
 #include <cstdint>
 #include <optional>
@@ -17,13 +18,15 @@ namespace kf::read {
 struct Group {
   enum class Kind : std::uint8_t { text, real, whole };
 
-  int code = 0;
+  std::int16_t code = 0;
   Kind kind = Kind::text;
   bool binary = false;
   std::string_view value;  // of text
-  double real = 0.0;       // of a binary real
-  std::int64_t whole = 0;  // of a binary whole number
+  std::uint64_t bits = 0;  // of a binary number
   std::size_t at = 0;      // line of the value in a text file, byte in a binary one
+
+  double real() const { return std::bit_cast<double>(bits); }
+  std::int64_t whole() const { return std::bit_cast<std::int64_t>(bits); }
 
   std::string place() const;  // "line 12" or "byte 812"
   std::string shown() const;  // the value for a message, cut to 40 characters
@@ -35,9 +38,9 @@ class GroupStream {
  public:
   GroupStream(std::string_view bytes, std::string_view name);
 
-  // The next pair, or empty at the end of the input. Comments (group 999) are passed over.
+  // Puts the next pair into `group`; false at the end of the input. Comments (group 999) are passed over.
   // Fails  cannotRead  a group code that is no whole number or is not known, or a code without its value.
-  Result<std::optional<Group>> next() { return binary_ ? nextBinary() : nextText(); }
+  Result<bool> next(Group& group) { return binary_ ? nextBinary(group) : nextText(group); }
 
   std::string place() const;
   double progress() const {
@@ -46,8 +49,8 @@ class GroupStream {
 
  private:
   bool takeLine(std::string_view& text);
-  Result<std::optional<Group>> nextText();
-  Result<std::optional<Group>> nextBinary();
+  Result<bool> nextText(Group& group);
+  Result<bool> nextBinary(Group& group);
   std::optional<std::uint64_t> takeBytes(std::size_t count);
   bool takeValue(Group& group);
   Error cutShort() const;
