@@ -57,6 +57,9 @@ void planOptions(CLI::App& verb, Request& request, std::string& pending) {
       ->allow_extra_args(false);
   verb.add_option("--law", request.law, "acceleration or jerk")
       ->check(CLI::IsMember({"acceleration", "jerk"}));
+  verb.add_option("--fit", request.fit,
+                  "fit lines, arcs and splines through runs of short segments, within this many mm")
+      ->check(CLI::PositiveNumber);
   verb.add_option("--uncut", request.uncut,
                   "where the tool does not reach the contour: trim (default, reported) or refuse")
       ->check(CLI::IsMember({"trim", "refuse"}));

@@ -50,7 +50,38 @@ void printUncut(Answer& answer, const std::vector<construct::UncutPlace>& uncut)
                counted(uncut.size(), "place"), deepest->depth, deepest->point.x, deepest->point.y);
 }
 
+void printFits(Answer& answer, const std::vector<construct::FitRun>& fits) {
+  construct::FitRun all;
+  for (const construct::FitRun& run : fits) {
+    all.pieces += run.pieces;
+    all.lines += run.lines;
+    all.arcs += run.arcs;
+    all.splines += run.splines;
+    all.spans += run.spans;
+    all.kept += run.kept;
+    all.deviation = std::max(all.deviation, run.deviation);
+  }
+  if (fits.empty()) return;
+  answer.print("   fit: {} became {}, {} and {} of {}, at most {:.4f} mm off", counted(all.pieces, "piece"),
+               counted(all.lines, "line"), counted(all.arcs, "arc"), counted(all.splines, "spline"),
+               counted(all.spans, "span"), all.deviation);
+  if (all.kept > 0) answer.print("; {} kept as drawn", counted(all.kept, "place"));
+  answer.print("\n");
+}
+
+void printLowSpeed(Answer& answer, const std::vector<plan::LowSpeedStretch>& low) {
+  if (low.empty()) return;
+  double length = 0.0, time = 0.0;
+  for (const plan::LowSpeedStretch& stretch : low) {
+    length += stretch.to - stretch.from;
+    time += stretch.time;
+  }
+  answer.print("   below the lowest feed in {}: {:.3f} mm, {:.3f} s\n", counted(low.size(), "place"), length,
+               time);
+}
+
 void printDrive(Answer& answer, const pipeline::DriveReport& drive) {
+  printFits(answer, drive.fits);
   printUncut(answer, drive.uncut);
   if (drive.blended + drive.stopped == 0) return;
   answer.print("   joints: {} blended, at most {:.4f} mm off the wanted path, {} kept", drive.blended,
@@ -86,6 +117,7 @@ void print(Answer& answer, const Request& request, const pipeline::OpenedDrawing
     if (planned.drive) printDrive(answer, *planned.drive);
     printShares(answer, p);
     printPrices(answer, planned.prices);
+    printLowSpeed(answer, planned.lowSpeed);
     printSpots(answer, planned.tightSpots);
   }
   answer.print("{}: {} in {:.3f} s\n", drawing.name, counted(plans.size(), "contour"), total);
@@ -130,6 +162,7 @@ pipeline::PlanOptions planOptions(const Request& request) {
   pipeline::PlanOptions options;
   if (!request.law.empty()) options.law = request.law == "jerk" ? plan::Law::jerk : plan::Law::acceleration;
   options.joints = request.joints == "exact" ? plan::Joints::exact : plan::Joints::blend;
+  options.fitTolerance = request.fit;
   options.refuseUncut = request.uncut == "refuse";
   options.targetNodes = static_cast<std::size_t>(request.nodes);
   return options;
@@ -164,6 +197,7 @@ Result<void> writeOutputs(const pipeline::OpenedDrawing& drawing,
     pipeline::SummaryInput input;
     input.drawing = &drawing;
     input.plans = &plans;
+    input.limits = &limits;
     const std::string text = pipeline::summaryJson(input);
     if (!summary.empty()) {
       if (auto done = outputs.add(summary, text, request.force); !done) return done;

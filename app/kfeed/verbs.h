@@ -29,6 +29,7 @@ struct Request {
   std::string limitsFile;
   std::vector<std::string> assignments;
   std::string law, joints, uncut;
+  std::optional<double> fit;  // mm
   std::string points, summary, outputFolder;
   std::string sampling = "time";
   std::optional<double> step;

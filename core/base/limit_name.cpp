@@ -20,7 +20,8 @@ constexpr std::array<std::string_view, kLimitNameCount> kTexts = {"feed",
                                                                   "axis-jerk-y",
                                                                   "tangential-jerk",
                                                                   "joint",
-                                                                  "stop"};
+                                                                  "stop",
+                                                                  "normal-jerk"};
 
 }  // namespace
 

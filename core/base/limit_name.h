@@ -27,9 +27,10 @@ enum class LimitName : std::uint8_t {
   tangentialJerk,
   joint,
   stop,
+  normalJerk,
 };
 
-inline constexpr std::size_t kLimitNameCount = 16;
+inline constexpr std::size_t kLimitNameCount = 17;
 
 // All names, in the order of the enumeration.
 std::array<LimitName, kLimitNameCount> allLimitNames();

@@ -81,6 +81,10 @@ std::vector<Field> makeFields() {
                getTop<&Limits::tangentialAcceleration>, putTop<&Limits::tangentialAcceleration>});
   f.push_back({"path.tangential_jerk_mm_per_s3", "mm/s^3", "Tangential jerk", "path", false,
                getTop<&Limits::tangentialJerk>, putTop<&Limits::tangentialJerk>});
+  f.push_back({"path.normal_jerk_mm_per_s3", "mm/s^3", "Normal jerk", "path", false,
+               getTop<&Limits::normalJerk>, putTop<&Limits::normalJerk>});
+  f.push_back({"path.lower_feed_mm_per_min", "mm/min", "Lowest feed", "path", false,
+               getTop<&Limits::lowerFeed, 60>, putTop<&Limits::lowerFeed, 60>});
   f.push_back({"control.path_tolerance_mm", "mm", "Path tolerance", "control", false,
                getTop<&Limits::pathTolerance>, putTop<&Limits::pathTolerance>});
   f.push_back({"control.chord_tolerance_mm", "mm", "Chord tolerance", "control", false,
@@ -91,8 +95,12 @@ std::vector<Field> makeFields() {
                getTop<&Limits::lookaheadBlocks>, putTop<&Limits::lookaheadBlocks>});
   f.push_back({"control.position_gain_per_s", "1/s", "Position gain", "control", false,
                getTop<&Limits::positionGain>, putTop<&Limits::positionGain>});
+  f.push_back({"control.velocity_gain_per_s", "1/s", "Velocity loop gain", "control", false,
+               getTop<&Limits::velocityGain>, putTop<&Limits::velocityGain>});
   f.push_back({"control.contour_error_mm", "mm", "Contour error", "control", false,
                getTop<&Limits::contourError>, putTop<&Limits::contourError>});
+  f.push_back({"control.block_length_mm", "mm", "Shortest block", "control", false,
+               getTop<&Limits::blockLength>, putTop<&Limits::blockLength>});
   f.push_back({"tool.diameter_mm", "mm", "Tool diameter", "tool", false, getTop<&Limits::toolDiameter>,
                putTop<&Limits::toolDiameter>});
   f.push_back({"tool.teeth", "", "Teeth", "tool", true, getTop<&Limits::teeth>, putTop<&Limits::teeth>});
@@ -102,6 +110,20 @@ std::vector<Field> makeFields() {
                putTop<&Limits::feedPerTooth>});
   f.push_back({"tool.radial_depth_mm", "mm", "Radial depth", "tool", false, getTop<&Limits::radialDepth>,
                putTop<&Limits::radialDepth>});
+  f.push_back({"tool.chip_thickness_mm", "mm", "Chip thickness", "tool", false,
+               getTop<&Limits::chipThickness>, putTop<&Limits::chipThickness>});
+  f.push_back({"moves.rapid_speed_mm_per_min", "mm/min", "Rapid speed", "moves", false,
+               getTop<&Limits::rapidSpeed, 60>, putTop<&Limits::rapidSpeed, 60>});
+  f.push_back({"moves.rapid_acceleration_mm_per_s2", "mm/s^2", "Rapid acceleration", "moves", false,
+               getTop<&Limits::rapidAcceleration>, putTop<&Limits::rapidAcceleration>});
+  f.push_back({"moves.plunge_feed_mm_per_min", "mm/min", "Plunge feed", "moves", false,
+               getTop<&Limits::plungeFeed, 60>, putTop<&Limits::plungeFeed, 60>});
+  f.push_back({"moves.plunge_depth_mm", "mm", "Plunge depth", "moves", false, getTop<&Limits::plungeDepth>,
+               putTop<&Limits::plungeDepth>});
+  f.push_back({"moves.retract_speed_mm_per_min", "mm/min", "Retract speed", "moves", false,
+               getTop<&Limits::retractSpeed, 60>, putTop<&Limits::retractSpeed, 60>});
+  f.push_back({"moves.pierce_time_s", "s", "Pierce time", "moves", false, getTop<&Limits::pierceTime>,
+               putTop<&Limits::pierceTime>});
   return f;
 }
 
@@ -149,6 +171,7 @@ std::vector<std::string_view> knownNames() {
   std::vector<std::string_view> names;
   for (const Field& field : fields()) names.push_back(field.name);
   names.push_back("tool.side");
+  names.push_back("path.feed_at");
   return names;
 }
 
@@ -162,6 +185,12 @@ Result<void> set(Limits& limits, std::string_view assignment) {
     const auto side = sideFromText(text);
     if (!side) return invalid(fmt::format("tool.side must be on, left or right, not '{}'", text));
     limits.side = *side;
+    return {};
+  }
+  if (name == "path.feed_at") {
+    if (text != "wall" && text != "centre")
+      return invalid(fmt::format("path.feed_at must be centre or wall, not '{}'", text));
+    limits.feedAtWall = text == "wall";
     return {};
   }
   const Field* field = findField(name);

@@ -53,6 +53,7 @@ std::vector<std::string> childrenOf(std::string_view prefix) {
   std::vector<std::string> all;
   for (const Field& field : fields()) all.emplace_back(field.name);
   all.emplace_back("tool.side");
+  all.emplace_back("path.feed_at");
   if (prefix.empty()) all.insert(all.end(), {"format", "version", "name", "example"});
   for (const std::string& name : all) {
     if (name.compare(0, prefix.size(), prefix) != 0) continue;
@@ -99,6 +100,13 @@ class Reader {
         return refused(
             source_, fmt::format("'tool.side' must be \"on\", \"left\" or \"right\", not {}", value.dump()));
       limits_.side = *side;
+      return {};
+    }
+    if (name == "path.feed_at") {
+      if (value != "wall" && value != "centre")
+        return refused(source_,
+                       fmt::format("'path.feed_at' must be \"centre\" or \"wall\", not {}", value.dump()));
+      limits_.feedAtWall = value == "wall";
       return {};
     }
     if (const Field* field = findField(name)) return number(*field, value);
@@ -192,6 +200,7 @@ std::string toJson(const Limits& limits) {
       place = *value;
     }
   }
+  json["path"]["feed_at"] = limits.feedAtWall ? "wall" : "centre";
   json["tool"]["side"] = toText(limits.side);
   return json.dump(2, ' ', false, Json::error_handler_t::replace) + "\n";
 }

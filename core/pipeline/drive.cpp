@@ -6,6 +6,7 @@
 #include <fmt/format.h>
 
 #include "core/pipeline/pipeline.h"
+#include "core/plan/moves.h"
 
 namespace kf::pipeline {
 namespace {
@@ -82,7 +83,17 @@ Result<std::vector<PreparedContour>> prepareDriven(const Contour& contour, int n
                                                    const limits::Limits& limits, const PlanOptions& options,
                                                    RunControl& control) {
   DriveReport report;
-  auto wanted = wantedPaths(contour, limits, options, report.uncut, control);
+  Contour fitted = contour;
+  if (options.fitTolerance) {
+    construct::FitOptions fitting;
+    fitting.tolerance = *options.fitTolerance;
+    auto made = construct::fitRuns(contour, fitting, control);
+    if (!made) return made.error();
+    fitted = std::move(made->fitted);
+    report.fits = std::move(made->runs);
+    report.fitCorners = made->corners;
+  }
+  auto wanted = wantedPaths(fitted, limits, options, report.uncut, control);
   if (!wanted) return wanted.error();
   std::vector<PreparedContour> all;
   for (const Contour& path : *wanted) {
@@ -90,8 +101,21 @@ Result<std::vector<PreparedContour>> prepareDriven(const Contour& contour, int n
     if (!prepared) return prepared.error();
     all.push_back(std::move(*prepared));
     report.uncut.clear();  // told once, with the first path
+    report.fits.clear();
   }
   return all;
+}
+
+JobTime jobTime(const std::vector<PlannedContour>& contours, const limits::Limits& limits) {
+  JobTime time;
+  for (std::size_t i = 0; i < contours.size(); ++i) {
+    time.cutting += contours[i].plan.time;
+    time.entry += plan::entryTime(limits);
+    if (i == 0) continue;
+    const path::Path &from = *contours[i - 1].path, &to = *contours[i].path;
+    time.rapid += plan::rapidTime(to.x.front() - from.x.back(), to.y.front() - from.y.back(), limits);
+  }
+  return time;
 }
 
 void numberParts(std::vector<PreparedContour>& all, int drawn) {

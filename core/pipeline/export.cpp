@@ -109,7 +109,20 @@ Json driveJson(const DriveReport& drive) {
                      {"depth_mm", finite(place.depth)},
                      {"area_mm2", place.area ? Json(*place.area) : Json(nullptr)}});
   }
-  return {{"uncut", std::move(uncut)},
+  Json fits = Json::array();
+  for (const construct::FitRun& run : drive.fits) {
+    fits.push_back({{"from_s_mm", run.from},
+                    {"to_s_mm", run.to},
+                    {"pieces", run.pieces},
+                    {"lines", run.lines},
+                    {"arcs", run.arcs},
+                    {"splines", run.splines},
+                    {"spans", run.spans},
+                    {"stretches_kept", run.kept},
+                    {"deviation_mm", run.deviation}});
+  }
+  return {{"fits", std::move(fits)},
+          {"uncut", std::move(uncut)},
           {"joints_blended", drive.blended},
           {"joints_kept", drive.stopped},
           {"largest_deviation_mm", drive.largestDeviation},
@@ -137,6 +150,15 @@ Json plannedJson(const PlannedContour& planned) {
                       {"time_saved_s", price.timeSaved}});
   }
   row["sensitivity"] = std::move(prices);
+  Json low = Json::array();
+  for (const plan::LowSpeedStretch& stretch : planned.lowSpeed) {
+    low.push_back({{"from_s_mm", stretch.from},
+                   {"to_s_mm", stretch.to},
+                   {"time_s", stretch.time},
+                   {"slowest_mm_per_min", stretch.slowest * 60.0},
+                   {"limited_by", toText(stretch.limitedBy)}});
+  }
+  row["below_lowest_feed"] = std::move(low);
   if (planned.drive) row["driven"] = driveJson(*planned.drive);
   return row;
 }
@@ -213,6 +235,12 @@ std::string summaryJson(const SummaryInput& input) {
     }
     json["contours"] = std::move(contours);
     json["total_time_s"] = total;
+    if (input.limits != nullptr) {
+      const JobTime job = jobTime(*input.plans, *input.limits);
+      json["rapid_time_s"] = job.rapid;
+      json["entry_time_s"] = job.entry;
+      json["job_time_s"] = job.total();
+    }
   } else {
     for (std::size_t i = 0; i < input.facts.size(); ++i) {
       Json row = factsJson(input.facts[i]);

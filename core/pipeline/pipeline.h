@@ -11,10 +11,12 @@
 #include "core/base/result.h"
 #include "core/base/run_control.h"
 #include "core/construct/blend.h"
+#include "core/construct/fit.h"
 #include "core/construct/offset.h"
 #include "core/contour/contour.h"
 #include "core/limits/limits.h"
 #include "core/path/path.h"
+#include "core/plan/low_speed.h"
 #include "core/plan/plan.h"
 #include "core/read/drawing.h"
 
@@ -50,7 +52,8 @@ struct PlanOptions {
   std::optional<plan::Law> law;  // empty: jerk where a jerk limit is given, else acceleration
   plan::Joints joints = plan::Joints::blend;
   std::map<int, std::vector<construct::JointChoice>> jointChoices;  // made by hand, by contour number
-  bool refuseUncut = false;  // refuse a contour that the tool does not reach everywhere
+  std::optional<double> fitTolerance;  // mm; runs of short segments are fitted within it first
+  bool refuseUncut = false;            // refuse a contour that the tool does not reach everywhere
   std::size_t targetNodes = 2000;
 };
 
@@ -84,6 +87,8 @@ struct DriveReport {
   std::vector<construct::JointReport> joints;      // places on `wanted`; empty where joints are kept exactly
   double largestDeviation = 0.0;                   // mm, proved bound, driven against wanted
   std::size_t blended = 0, stopped = 0, crowded = 0;
+  std::vector<construct::FitRun> fits;  // runs of short segments that were fitted, on the drawing's contour
+  std::size_t fitCorners = 0;           // corners found in them
   std::vector<construct::UncutPlace> uncut;  // what the tool does not reach; places on the drawing's contour
 };
 
@@ -93,9 +98,10 @@ struct PlannedContour {
   std::shared_ptr<const DriveReport> drive;  // null when the drawing's contour is driven as it is
   plan::Law law = plan::Law::acceleration;   // that it was planned by
   plan::Plan plan;
-  double meanFeed = 0.0;              // mm/s
-  std::vector<TightSpot> tightSpots;  // worst first, by time lost
-  std::vector<plan::Price> prices;    // largest first
+  double meanFeed = 0.0;                        // mm/s
+  std::vector<TightSpot> tightSpots;            // worst first, by time lost
+  std::vector<plan::Price> prices;              // largest first
+  std::vector<plan::LowSpeedStretch> lowSpeed;  // below limits.lowerFeed, in order; empty without one
 };
 
 // Path and facts of one contour; independent of limits, so that a limit change can reuse it.
@@ -147,12 +153,21 @@ Result<std::string> pointListFor(const OpenedDrawing& drawing, const std::vector
 Result<void> exportPoints(const OpenedDrawing& drawing, const std::vector<PlannedContour>& contours,
                           const limits::Limits& limits, const PointListRequest& request, RunControl& control);
 
+// Seconds of the whole job: cutting in the order given, rapid moves between the contours (rest to rest,
+// straight), and plunging, piercing and withdrawing at each.
+struct JobTime {
+  double cutting = 0.0, rapid = 0.0, entry = 0.0;
+  double total() const { return cutting + rapid + entry; }
+};
+JobTime jobTime(const std::vector<PlannedContour>& contours, const limits::Limits& limits);
+
 // The summary document (format kappafeed-summary) as JSON text. `limits` null: inspect.
 struct SummaryInput {
   const OpenedDrawing* drawing = nullptr;
   std::vector<ContourFacts> facts;                     // inspect
   std::vector<std::vector<TightSpot>> spots;           // inspect
   const std::vector<PlannedContour>* plans = nullptr;  // plan
+  const limits::Limits* limits = nullptr;              // plan: for the moves between contours
 };
 std::string summaryJson(const SummaryInput& input);
 

@@ -147,6 +147,7 @@ Result<PlannedContour> planContour(const PreparedContour& prepared, const limits
   planned.law = planning.law;
   planned.plan = std::move(*plan);
   planned.meanFeed = prepared.facts.length / planned.plan.time;
+  if (limits.lowerFeed) planned.lowSpeed = plan::lowSpeedStretches(planned.plan.schedule, *limits.lowerFeed);
   planned.tightSpots = spotsOf(*prepared.path, planned.plan, *limits.feed);
   if (withPrices) {
     auto prices = plan::prices(*prepared.path, limits, planning, 10.0, control);

@@ -3,6 +3,7 @@
 #include <algorithm>
 #include <cmath>
 
+#include "core/plan/cap_formulas.h"
 #include "core/plan/plan.h"
 
 namespace kf::plan {
@@ -23,14 +24,6 @@ struct Lowest {
   }
   void offerSpeed(double v, LimitName by) { offer(v * v, by); }
 };
-
-// In one block period the motion is a chord of length v T, whose height over an arc of radius R is e:
-// (v T / 2)^2 = R^2 - (R - e)^2 = e (2 R - e). Source: Yeh & Hsu 2002 (from memory). A circle smaller than
-// the tolerance is still never skipped: its chord can't be longer than its diameter.
-double chordSpeed(double radius, double error, double period) {
-  if (radius <= error) return 2.0 * radius / period;
-  return 2.0 / period * std::sqrt(error * (2.0 * radius - error));
-}
 
 // Lines and arcs are one block each; the control can't start a new block sooner than one period after the
 // last. A blend belongs half to the block before and half to the one after: blocks part where the drawing's
@@ -64,6 +57,42 @@ std::vector<double> blockSpeeds(const path::Path& path, double period) {
   return speeds;
 }
 
+// What the cut allows, with everything that does not depend on the place worked out once.
+class CutCaps {
+ public:
+  explicit CutCaps(const limits::Limits& limits) : limits_(limits) {
+    radius_ = 0.5 * limits.toolDiameter.value_or(0.0);
+    // The wall lies right of a path that runs left of the contour: a left turn is then concave.
+    concave_ = limits.side == limits::Side::left ? 1.0 : limits.side == limits::Side::right ? -1.0 : 0.0;
+    if (limits.teeth && limits.spindleRpm) teethPerSecond_ = *limits.teeth * *limits.spindleRpm / 60.0;
+  }
+
+  void offer(double k, Lowest& lowest) const {
+    const double kappa = concave_ * k;
+    if (limits_.feed) {
+      const double factor =
+          limits_.feedAtWall && concave_ != 0.0 && radius_ > 0.0 ? wallFeedFactor(kappa, radius_) : 1.0;
+      lowest.offerSpeed(*limits_.feed * factor, LimitName::feed);
+    }
+    if (!(teethPerSecond_ > 0.0)) return;
+    if (limits_.feedPerTooth) lowest.offerSpeed(*limits_.feedPerTooth * teethPerSecond_, LimitName::chipLoad);
+    if (limits_.chipThickness)
+      lowest.offerSpeed(*limits_.chipThickness / thicknessRatio(kappa) * teethPerSecond_,
+                        LimitName::chipLoad);
+  }
+
+ private:
+  // Without a radial depth the tool cuts over its whole width.
+  double thicknessRatio(double kappa) const {
+    if (!limits_.radialDepth || !(radius_ > 0.0)) return 1.0;
+    const double depth = effectiveRadialDepth(*limits_.radialDepth, kappa, radius_);
+    return std::max(chipThicknessRatio(depth, 2.0 * radius_), 1e-3);
+  }
+
+  const limits::Limits& limits_;
+  double radius_ = 0.0, concave_ = 0.0, teethPerSecond_ = 0.0;
+};
+
 // What limits on a bend of curvature k (not negative) allow.
 void offerBend(Lowest& lowest, const limits::Limits& limits, double k) {
   if (!(k > 0.0)) return;
@@ -71,10 +100,11 @@ void offerBend(Lowest& lowest, const limits::Limits& limits, double k) {
     lowest.offer(*limits.centripetalAcceleration / k, LimitName::centripetal);
   if (limits.chordTolerance && limits.blockPeriod)
     lowest.offerSpeed(chordSpeed(1.0 / k, *limits.chordTolerance, *limits.blockPeriod), LimitName::chord);
-  // A first-order position loop with gain K trails by v/K and cuts a bend short by v^2 / (2 R K^2).
   if (limits.positionGain && limits.contourError) {
-    lowest.offer(2.0 * *limits.contourError * *limits.positionGain * *limits.positionGain / k,
-                 LimitName::contourError);
+    const double q = limits.velocityGain
+                         ? servoLagQ(k, *limits.contourError, *limits.positionGain, *limits.velocityGain)
+                         : servoLagQ(k, *limits.contourError, *limits.positionGain);
+    lowest.offer(q, LimitName::contourError);
   }
 }
 
@@ -122,17 +152,18 @@ Caps speedCaps(const path::Path& path, const limits::Limits& limits) {
   caps.limitedBy.resize(n);
   std::vector<double> blocks;
   if (limits.blockPeriod) blocks = blockSpeeds(path, *limits.blockPeriod);
-  const bool chips = limits.feedPerTooth && limits.teeth && limits.spindleRpm;
+  const CutCaps cut(limits);
   for (std::size_t i = 0; i < n; ++i) {
     Lowest lowest;
     const double tx = std::abs(path.tx[i]), ty = std::abs(path.ty[i]), k = std::abs(path.k[i]);
-    if (limits.feed) lowest.offerSpeed(*limits.feed, LimitName::feed);
-    if (chips)
-      lowest.offerSpeed(*limits.feedPerTooth * *limits.teeth * *limits.spindleRpm / 60.0,
-                        LimitName::chipLoad);
+    cut.offer(path.k[i], lowest);
     if (limits.x.speed && tx > 0.0) lowest.offerSpeed(*limits.x.speed / tx, LimitName::axisSpeedX);
     if (limits.y.speed && ty > 0.0) lowest.offerSpeed(*limits.y.speed / ty, LimitName::axisSpeedY);
     if (limits.blockPeriod) lowest.offerSpeed(blocks[path.segment[i]], LimitName::blockPeriod);
+    if (limits.blockLength && limits.blockPeriod)
+      lowest.offerSpeed(*limits.blockLength / *limits.blockPeriod, LimitName::blockPeriod);
+    if (limits.normalJerk)
+      lowest.offerSpeed(bendJerkSpeed(k, path.dk[i], *limits.normalJerk), LimitName::normalJerk);
     offerBend(lowest, limits, k);
     caps.q[i] = lowest.q;
     caps.limitedBy[i] = lowest.name;

@@ -25,13 +25,14 @@ std::vector<Knob> knobs() {
       {LimitName::chord, [](Limits& l) { return &l.chordTolerance; }},
       {LimitName::blockPeriod, [](Limits& l) { return &l.blockPeriod; }, true},
       {LimitName::contourError, [](Limits& l) { return &l.contourError; }},
-      {LimitName::chipLoad, [](Limits& l) { return &l.feedPerTooth; }},
+      {LimitName::chipLoad, [](Limits& l) { return l.feedPerTooth ? &l.feedPerTooth : &l.chipThickness; }},
       {LimitName::axisAccelerationX, [](Limits& l) { return &l.x.acceleration; }},
       {LimitName::axisAccelerationY, [](Limits& l) { return &l.y.acceleration; }},
       {LimitName::tangentialAcceleration, [](Limits& l) { return &l.tangentialAcceleration; }},
       {LimitName::axisJerkX, [](Limits& l) { return &l.x.jerk; }},
       {LimitName::axisJerkY, [](Limits& l) { return &l.y.jerk; }},
       {LimitName::tangentialJerk, [](Limits& l) { return &l.tangentialJerk; }},
+      {LimitName::normalJerk, [](Limits& l) { return &l.normalJerk; }},
   };
 }
 

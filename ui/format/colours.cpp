@@ -35,6 +35,7 @@ constexpr std::array<Look, kLimitNameCount> kLooks = {{
     {0xD55E00, Qt::DotLine, u"tangential jerk"},
     {0xBBBBBB, Qt::DashLine, u"joint"},
     {0xBBBBBB, Qt::SolidLine, u"stop"},
+    {0xE69F00, Qt::DashLine, u"normal jerk"},
 }};
 
 }  // namespace

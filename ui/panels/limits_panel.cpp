@@ -47,6 +47,7 @@ QString groupTitle(std::string_view group) {
   if (group == "axes") return LimitsPanel::tr("Axes");
   if (group == "path") return LimitsPanel::tr("Along the path");
   if (group == "control") return LimitsPanel::tr("Control");
+  if (group == "moves") return LimitsPanel::tr("Moves between contours");
   return LimitsPanel::tr("Tool and cut");
 }
 
