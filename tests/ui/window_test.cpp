@@ -8,6 +8,7 @@
 #include <QDoubleSpinBox>
 #include <QDragEnterEvent>
 #include <QDropEvent>
+#include <QEventLoop>
 #include <QFile>
 #include <QLabel>
 #include <QLineEdit>
@@ -60,6 +61,7 @@ class Window : public ::testing::Test {
     window.resize(1400, 900);
     window.show();
     EXPECT_TRUE(document.loadLimits(sample("limits/example-router.json")));
+    document.setLaw(plan::Law::acceleration);  // planned at once, not in the background
     document.undoStack().clear();
   }
 
@@ -213,6 +215,18 @@ TEST_F(Window, AsksBeforeItLeavesEntitiesOut) {
   EXPECT_EQ(document.contourCount(), 1);
   ASSERT_EQ(document.drawing()->skipped.size(), 1U);
   EXPECT_EQ(document.drawing()->skipped.front().kind, "3DFACE");
+  auto* leftOut = window.findChild<QLabel*>("leftOut");  // stays in sight
+  EXPECT_TRUE(leftOut->isVisible());
+  EXPECT_TRUE(leftOut->text().contains("1 3DFACE")) << leftOut->text().toStdString();
+}
+
+TEST_F(Window, OpensNothingWhenTheUnitIsNotGiven) {
+  QSignalSpy asked(&document, &Document::openNeedsUnits);
+  whenModal([](QWidget* box) { static_cast<QDialog*>(box)->reject(); });
+  window.openDrawing(sample("oar_blade.dxf"));
+  ASSERT_TRUE(asked.wait(20'000));
+  EXPECT_TRUE(document.isEmpty());
+  EXPECT_FALSE(document.isOpening());
 }
 
 TEST_F(Window, ReportsADamagedDrawingAndKeepsTheOpenOne) {
@@ -274,6 +288,78 @@ TEST_F(Window, ExportsPointsAfterTheCautionsAndTheyReadBack) {
   const curve::Vec2 first = read->curves.front().curve.startPoint();
   EXPECT_NEAR(first.x, document.planAt(0)->path->x[0], 1e-6);
   EXPECT_NEAR(first.y, document.planAt(0)->path->y[0], 1e-6);
+}
+
+TEST_F(Window, LeavesAnExistingFileAloneUnlessTold) {
+  open(sample("gasket.dxf"));
+  document.confirmLimitsAreMine();
+  const QString path = dir.filePath("points.csv");
+  QFile old(path);
+  ASSERT_TRUE(old.open(QIODevice::WriteOnly));
+  old.write("old");
+  old.close();
+  bool asked = false;
+  whenModal([&](QWidget* caution) {
+    whenModal([&](QWidget* dialog) {
+      dialog->findChild<QLineEdit*>("path")->setText(path);
+      whenModal([&](QWidget* question) {
+        asked = true;
+        qobject_cast<QMessageBox*>(question)->button(QMessageBox::No)->click();
+      });
+      static_cast<QDialog*>(dialog)->accept();
+    });
+    press(caution, "accept");
+  });
+  QTest::keyClick(&window, Qt::Key_E, Qt::ControlModifier);
+  EXPECT_TRUE(asked);
+  ASSERT_TRUE(old.open(QIODevice::ReadOnly));
+  EXPECT_EQ(old.readAll(), "old");
+}
+
+TEST_F(Window, SaysWhyAPointListCouldNotBeWritten) {
+  open(sample("gasket.dxf"));
+  document.confirmLimitsAreMine();
+  QString message;
+  QEventLoop untilTold;
+  whenModal([&](QWidget* caution) {
+    whenModal([&](QWidget* dialog) {
+      dialog->findChild<QLineEdit*>("path")->setText(dir.filePath("no such folder/points.csv"));
+      whenModal([&](QWidget* error) {
+        message = qobject_cast<QMessageBox*>(error)->text();
+        static_cast<QDialog*>(error)->accept();
+        untilTold.quit();
+      });
+      static_cast<QDialog*>(dialog)->accept();
+    });
+    press(caution, "accept");
+  });
+  QTest::keyClick(&window, Qt::Key_E, Qt::ControlModifier);
+  if (message.isEmpty()) untilTold.exec();
+  EXPECT_TRUE(message.contains("points.csv")) << message.toStdString();
+}
+
+TEST_F(Window, AsksBeforeChangedLimitsAreLost) {
+  open(sample("gasket.dxf"));
+  EXPECT_TRUE(window.findChild<QLabel*>("totalTime")->isVisible());
+  window.findChild<QDoubleSpinBox*>("path.feed_mm_per_min")->setValue(3000.0);
+  EXPECT_TRUE(window.windowTitle().contains("not saved"));
+  whenModal([](QWidget* box) { qobject_cast<QMessageBox*>(box)->button(QMessageBox::Cancel)->click(); });
+  window.close();
+  EXPECT_TRUE(window.isVisible());
+  document.undoStack().undo();
+  window.close();
+  EXPECT_FALSE(window.isVisible());
+}
+
+TEST_F(Window, MarksTheStretchThatThePlotShows) {
+  open(sample("gasket.dxf"));
+  EXPECT_FALSE(document.stretch());
+  document.showPlace(100.0, 2.0);
+  ASSERT_TRUE(document.stretch());
+  EXPECT_NEAR(document.stretch()->first, window.plot().rangeLow(), 1e-9);
+  EXPECT_NEAR(document.stretch()->second, window.plot().rangeHigh(), 1e-9);
+  window.plot().showWhole();
+  EXPECT_FALSE(document.stretch());
 }
 
 TEST_F(Window, PlaysAlongThePathInTime) {

@@ -12,9 +12,8 @@
 namespace kf::ui {
 namespace {
 
-constexpr double kMargin = 46.0;      // px around a fitted drawing
-constexpr double kLegendRoom = 34.0;  // px more at the top
-constexpr double kReach = 28.0;       // px within which the path is pointed at
+constexpr double kMargin = 46.0;  // px around a fitted drawing
+constexpr double kReach = 28.0;   // px within which the path is pointed at
 constexpr double kLeastScale = 1e-6, kMostScale = 1e6;
 
 }  // namespace
@@ -30,11 +29,11 @@ Canvas::Canvas(Document& document, QWidget* parent) : QWidget(parent), document_
     fit();
   });
   connect(&document_, &Document::opening, this, &Canvas::refresh);
-  for (auto signal : {&Document::plansChanged, &Document::chosenChanged, &Document::unitsChanged,
-                      &Document::colouringChanged, &Document::stretchChanged}) {
+  for (auto signal : {&Document::chosenChanged, &Document::unitsChanged, &Document::stretchChanged})
     connect(&document_, signal, this, &Canvas::refresh);
-  }
-  connect(&document_, &Document::failed, this, &Canvas::refresh);
+  for (auto signal : {&Document::plansChanged, &Document::colouringChanged})
+    connect(&document_, signal, this, &Canvas::refreshFitted);
+  connect(&document_, &Document::openingEnded, this, &Canvas::refresh);
   connect(&document_, &Document::cursorChanged, this, qOverload<>(&QWidget::update));
   connect(&document_, &Document::placeShown, this, &Canvas::showPlace);
 }
@@ -44,15 +43,24 @@ void Canvas::refresh() {
   update();
 }
 
+// The legend's height may have changed, and with it the room for the drawing.
+void Canvas::refreshFitted() {
+  if (fitted_) {
+    fit();
+  } else {
+    refresh();
+  }
+}
+
 void Canvas::fit() {
   fitted_ = true;
   if (!document_.isEmpty()) {
     const curve::Box& box = document_.drawing()->bounds;
+    const double legend = legendHeight() - 10.0;  // px more at the top
     const double w = std::max(box.width(), 1e-6), h = std::max(box.height(), 1e-6);
-    scale_ = std::clamp(std::min((width() - 2 * kMargin) / w, (height() - 2 * kMargin - kLegendRoom) / h),
+    scale_ = std::clamp(std::min((width() - 2 * kMargin) / w, (height() - 2 * kMargin - legend) / h),
                         kLeastScale, kMostScale);
-    centre_ =
-        QPointF(0.5 * (box.low.x + box.high.x), 0.5 * (box.low.y + box.high.y) + 0.5 * kLegendRoom / scale_);
+    centre_ = QPointF(0.5 * (box.low.x + box.high.x), 0.5 * (box.low.y + box.high.y) + 0.5 * legend / scale_);
   }
   refresh();
 }

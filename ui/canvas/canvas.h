@@ -55,6 +55,7 @@ class Canvas : public QWidget {
   };
 
   void refresh();
+  void refreshFitted();
   void render();
   void traceWanted();
   void drawWanted(QPainter& painter) const;
@@ -63,6 +64,8 @@ class Canvas : public QWidget {
   void drawColoured(QPainter& painter, int index) const;
   void drawGrid(QPainter& painter) const;
   void drawScaleBar(QPainter& painter) const;
+  std::vector<LimitName> limitsInUse() const;
+  double legendHeight() const;
   void drawLegend(QPainter& painter) const;
   void drawLimitLegend(QPainter& painter) const;
   void drawMarks(QPainter& painter) const;

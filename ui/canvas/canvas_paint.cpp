@@ -53,6 +53,12 @@ Canvas::ScaleRange rangeOf(const Document& document) {
   return {0.0, high, *std::max_element(at, all.end()) > 1.0001 * high};
 }
 
+constexpr double kLeastStep = 0.7;  // px; nodes nearer than this are not drawn one by one
+
+bool isFar(const QPointF& a, const QPointF& b) {
+  return std::abs(a.x() - b.x()) + std::abs(a.y() - b.y()) >= kLeastStep;
+}
+
 }  // namespace
 
 void Canvas::paintEvent(QPaintEvent* /*event*/) {
@@ -169,7 +175,9 @@ void Canvas::drawHalo(QPainter& painter) const {
   QPolygonF line;
   line << toScreen(first.x, first.y);
   for (std::size_t i = 0; i < path.size(); ++i) {
-    if (path.s[i] > from && path.s[i] < to) line << toScreen(path.x[i], path.y[i]);
+    if (path.s[i] <= from || path.s[i] >= to) continue;
+    const QPointF at = toScreen(path.x[i], path.y[i]);
+    if (isFar(at, line.back())) line << at;
   }
   line << toScreen(last.x, last.y);
   painter.setPen(QPen(kHalo, 12, Qt::SolidLine, Qt::RoundCap, Qt::RoundJoin));
@@ -209,25 +217,32 @@ void Canvas::drawColoured(QPainter& painter, int index) const {
   QPolygonF run;
   int shade = -1;
   const auto flush = [&] {
-    if (run.size() > 1) {
-      const auto name = static_cast<LimitName>(std::max(shade, 0));
-      QPen pen(byLimit ? limitColour(name) : scaleColour(static_cast<double>(shade) / (kShades - 1)), width,
-               byLimit ? limitDash(name) : Qt::SolidLine, byLimit ? Qt::FlatCap : Qt::RoundCap,
-               Qt::RoundJoin);
-      painter.setPen(pen);
-      painter.drawPolyline(run);
-    }
+    if (run.size() < 2) return;
+    const auto name = static_cast<LimitName>(std::max(shade, 0));
+    painter.setPen(QPen(byLimit ? limitColour(name) : scaleColour(static_cast<double>(shade) / (kShades - 1)),
+                        width, byLimit ? limitDash(name) : Qt::SolidLine,
+                        byLimit ? Qt::FlatCap : Qt::RoundCap, Qt::RoundJoin));
+    painter.drawPolyline(run);
   };
+  // Cells smaller than a pixel are drawn together, in the shade of the slowest or most bent of them.
+  int pending = -1;
+  const bool lowest = document_.colouring() == Colouring::speed;
   for (std::size_t i = 0; i + 1 < path.size(); ++i) {
     if (path.breakAfter[i] != path::BreakKind::none) continue;
-    const int now = shadeOf(i);
-    if (now != shade) {
+    const int here = shadeOf(i);
+    pending = pending < 0 || byLimit ? here : lowest ? std::min(pending, here) : std::max(pending, here);
+    if (run.isEmpty()) run << toScreen(path.x[i], path.y[i]);
+    const QPointF at = toScreen(path.x[i + 1], path.y[i + 1]);
+    if (!isFar(at, run.back()) && i + 2 < path.size()) continue;
+    if (pending != shade) {
+      const QPointF from = run.back();
       flush();
       run.clear();
-      shade = now;
-      run << toScreen(path.x[i], path.y[i]);
+      run << from;
+      shade = pending;
     }
-    run << toScreen(path.x[i + 1], path.y[i + 1]);
+    run << at;
+    pending = -1;
   }
   flush();
 }
@@ -298,12 +313,31 @@ void Canvas::drawSpots(QPainter& painter, const path::Path& path) const {
   painter.restore();
 }
 
+std::vector<LimitName> Canvas::limitsInUse() const {
+  std::array<bool, kLimitNameCount> used{};
+  for (int i = 0; i < document_.contourCount(); ++i) {
+    if (const auto* planned = document_.planAt(i)) {
+      for (LimitName name : planned->plan.limitedBy) used[static_cast<std::size_t>(name)] = true;
+    }
+  }
+  std::vector<LimitName> list;
+  for (LimitName name : allLimitNames()) {
+    if (used[static_cast<std::size_t>(name)]) list.push_back(name);
+  }
+  return list;
+}
+
+double Canvas::legendHeight() const {
+  if (document_.colouring() != Colouring::limit) return 52.0;
+  return 28.0 + 17.0 * static_cast<double>((limitsInUse().size() + 1) / 2);
+}
+
 void Canvas::drawLegend(QPainter& painter) const {
   if (document_.colouring() == Colouring::limit) {
     drawLimitLegend(painter);
     return;
   }
-  const QRectF box(width() - 236.0, 8, 228, 52), bar(box.left() + 12, box.top() + 22, 204, 9);
+  const QRectF box(width() - 236.0, 8, 228, legendHeight()), bar(box.left() + 12, box.top() + 22, 204, 9);
   painter.setPen(Qt::NoPen);
   painter.setBrush(kPanel);
   painter.drawRoundedRect(box, 5, 5);
@@ -325,28 +359,23 @@ void Canvas::drawLegend(QPainter& painter) const {
                    range_.cut ? tr("%1 and more").arg(number(range_.high)) : number(range_.high));
 }
 
+// In two columns, so that it stays low.
 void Canvas::drawLimitLegend(QPainter& painter) const {
-  std::array<bool, kLimitNameCount> used{};
-  for (int i = 0; i < document_.contourCount(); ++i) {
-    if (const auto* planned = document_.planAt(i)) {
-      for (LimitName name : planned->plan.limitedBy) used[static_cast<std::size_t>(name)] = true;
-    }
-  }
-  const auto count = static_cast<double>(std::count(used.begin(), used.end(), true));
-  const QRectF box(width() - 236.0, 8, 228, 30 + 18 * count);
+  constexpr double kColumn = 204.0;
+  const std::vector<LimitName> list = limitsInUse();
+  const QRectF box(width() - 2 * kColumn - 16.0, 8, 2 * kColumn + 8, legendHeight());
   painter.setPen(Qt::NoPen);
   painter.setBrush(kPanel);
   painter.drawRoundedRect(box, 5, 5);
-  double y = box.top() + 18;
   painter.setPen(kInk);
-  painter.drawText(QPointF(box.left() + 12, y), tr("What limits the speed"));
-  for (LimitName name : allLimitNames()) {
-    if (!used[static_cast<std::size_t>(name)]) continue;
-    y += 18;
-    painter.setPen(QPen(limitColour(name), 3.4, limitDash(name), Qt::FlatCap));
-    painter.drawLine(QPointF(box.left() + 12, y - 4), QPointF(box.left() + 48, y - 4));
+  painter.drawText(QPointF(box.left() + 12, box.top() + 17), tr("What limits the speed"));
+  for (std::size_t i = 0; i < list.size(); ++i) {
+    const QPointF at(box.left() + 12 + kColumn * static_cast<double>(i % 2),
+                     box.top() + 35 + 17.0 * static_cast<double>(i / 2));
+    painter.setPen(QPen(limitColour(list[i]), 3.4, limitDash(list[i]), Qt::FlatCap));
+    painter.drawLine(at + QPointF(0, -4), at + QPointF(30, -4));
     painter.setPen(kInk);
-    painter.drawText(QPointF(box.left() + 58, y), limitLabel(name));
+    painter.drawText(at + QPointF(38, 0), limitLabel(list[i]));
   }
 }
 

@@ -34,7 +34,11 @@ limits::Limits startingLimits() {
 }  // namespace
 
 Document::Document(QObject* parent)
-    : QObject(parent), limits_(startingLimits()), savedLimits_(startingLimits()) {}
+    : QObject(parent), limits_(startingLimits()), savedLimits_(startingLimits()) {
+  priceDelay_.setSingleShot(true);
+  priceDelay_.setInterval(120);
+  connect(&priceDelay_, &QTimer::timeout, this, &Document::startPrices);
+}
 Document::~Document() = default;
 
 void Document::open(const QString& path, const pipeline::OpenOptions& options) {
@@ -52,9 +56,11 @@ void Document::open(const QString& path, const pipeline::OpenOptions& options) {
 
 void Document::cancelOpening() {
   opener_.cancel();
+  emit openingEnded();
 }
 
 void Document::takeOpened(const QString& path, const pipeline::OpenOptions& options, Result<Opened> result) {
+  emit openingEnded();
   if (!result) {
     switch (result.error().code) {
       case ErrorCode::cancelled:
@@ -228,6 +234,7 @@ double Document::totalLowerBound() const {
 }
 
 void Document::replan() {
+  priceDelay_.stop();
   pricer_.cancel();
   prices_.clear();
   if (prepared_.empty()) {
@@ -308,7 +315,7 @@ void Document::takePlans(Result<Planned> planned) {
   emit planningChanged();
   emit plansChanged();
   emit pricesChanged();
-  if (usable && planError_.isEmpty() && !refining_) startPrices();
+  if (usable && planError_.isEmpty() && !refining_) priceDelay_.start();
 }
 
 void Document::startPrices() {

@@ -5,6 +5,7 @@
 #include <QElapsedTimer>
 #include <QObject>
 #include <QString>
+#include <QTimer>
 #include <QUndoStack>
 #include <memory>
 #include <optional>
@@ -111,6 +112,7 @@ class Document : public QObject {
  signals:
   void opening(const QString& path);
   void opened();
+  void openingEnded();  // in whatever way, before any of the others
   // Ask, and open again with the answer in the options.
   void openNeedsUnits(const QString& path, const pipeline::OpenOptions& options);
   void openNeedsSkipping(const QString& path, const pipeline::OpenOptions& options, const QString& message);
@@ -156,6 +158,7 @@ class Document : public QObject {
   std::size_t gesture_ = 0;
   bool planAgain_ = false;  // limits changed while a plan was being made
   QElapsedTimer planClock_;
+  QTimer priceDelay_;  // prices wait until a drag pauses
   Units units_ = Units::mm;
   Colouring colouring_ = Colouring::speed;
   QUndoStack undo_;

@@ -65,6 +65,7 @@ QVariant JointModel::data(const QModelIndex& index, int role) const {
     case 2:
       return QString::number(joint.turn * 180.0 / std::numbers::pi, 'f', 1) + u'\u00B0';
     case 3:
+      if (std::abs(joint.curvatureChange) < 1e-9) return QStringLiteral("\u2013");
       return QString::number(
           document_.units() == Units::inch ? 25.4 * joint.curvatureChange : joint.curvatureChange, 'g', 3);
     case 4:

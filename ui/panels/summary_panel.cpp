@@ -57,7 +57,7 @@ SummaryPanel::SummaryPanel(Document& document, QWidget* parent) : QWidget(parent
   problem_->setStyleSheet(
       QStringLiteral("background:#fbe3da; color:#6b1d00; padding:4px; border-left:4px solid #D55E00;"));
   for (auto signal : {&Document::opened, &Document::plansChanged, &Document::referenceChanged,
-                      &Document::planningChanged, &Document::choicesChanged})
+                      &Document::planningChanged, &Document::choicesChanged, &Document::unitsChanged})
     connect(&document_, signal, this, &SummaryPanel::refresh);
   refresh();
 }
@@ -103,6 +103,10 @@ void SummaryPanel::refreshComparison(bool planned) {
   compare_->setVisible(pinned > 0.0 && planned);
   const double change = document_.totalTime() - pinned;
   const double percent = pinned > 0.0 ? 100.0 * std::abs(change) / pinned : 0.0;
+  if (std::abs(change) < 5e-4) {
+    compare_->setText(tr("Pinned plan %1: no difference").arg(timeText(pinned)));
+    return;
+  }
   compare_->setText(tr("Pinned plan %1: now %2 %3 s (%4 %)")
                         .arg(timeText(pinned), change <= 0.0 ? tr("shorter by") : tr("longer by"),
                              timeNumber(std::abs(change)), QString::number(percent, 'f', 1)));

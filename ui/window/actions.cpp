@@ -106,7 +106,6 @@ void MainWindow::makeActions() {
     if (document_.isOpening()) {
       document_.cancelOpening();
       statusBar()->showMessage(tr("Stopped opening"), 5'000);
-      canvas_->update();
     }
     togglePlay(false);
   });

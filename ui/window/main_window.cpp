@@ -143,8 +143,8 @@ void MainWindow::connectDocument() {
   connect(&document_, &Document::opening, this, [this](const QString& path) {
     statusBar()->showMessage(tr("Opening %1\u2026 (Esc stops it)").arg(path));
   });
+  connect(&document_, &Document::openingEnded, this, [this] { statusBar()->clearMessage(); });
   connect(&document_, &Document::opened, this, [this] {
-    statusBar()->clearMessage();
     act_->play->setChecked(false);
     refreshTitle();
     refreshActions();
