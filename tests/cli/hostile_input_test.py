@@ -83,5 +83,5 @@ class Limits(InAFolder):
                 self.refused(kfeed("plan", GASKET, "--limits", self.file("l.json", content)), code)
 
     def test_the_nearest_key_is_named(self):
-        path = self.file("l.json", limits(path={"feed": 6000}))
-        self.refused(kfeed("plan", GASKET, "--limits", path), 3, "path.feed'", "path.feed_mm_per_min")
+        path = self.file("l.json", limits(path={"feed_mm_per_minute": 6000}))
+        self.refused(kfeed("plan", GASKET, "--limits", path), 3, "path.feed_mm_per_minute'", "path.feed_mm_per_min'")

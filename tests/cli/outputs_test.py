@@ -85,10 +85,10 @@ class Sameness(InAFolder):
                                capture_output=True, check=False)
         self.assertEqual(comma.stdout, b"1,5", "the locale made here is not in force")
         for arguments in (["--points", "-"], ["--json"], ["--points", "-", "--sample", "chord"]):
-            plain = kfeed("plan", GASKET, "--limits", ROUTER, "--contour", "1-3", *arguments, environment={"LC_ALL": "C"}).out
+            plain = kfeed("plan", GASKET, "--limits", ROUTER, "--law", "acceleration", *arguments, environment={"LC_ALL": "C"}).out
             self.assertGreater(len(plain), 1000)
             for name in ("de_DE", "tr_TR", "ar_EG", "fr_FR"):
-                there = kfeed("plan", GASKET, "--limits", ROUTER, "--contour", "1-3", *arguments,
+                there = kfeed("plan", GASKET, "--limits", ROUTER, "--law", "acceleration", *arguments,
                               environment={"LC_ALL": name + ".UTF-8", "LOCPATH": str(self.folder)}).out
                 self.assertEqual(plain, there, name)
 

@@ -33,7 +33,7 @@ class Usage(InAFolder):
                 (plan + ["--contour", "9"], "1 to 8"), (plan + ["--contour", "0"], "1 to 8"),
                 (plan + ["--contour", "3-1"], "3-1"), (plan + ["--contour", "1,,2"], "--contour"),
                 (plan + ["--contour", "99999999999999999999"], "--contour"),
-                (plan + ["--set", "path.feed=3"], "path.feed_mm_per_min"), (plan + ["--set", "nothing"], "NAME=VALUE"),
+                (plan + ["--set", "path.feed_mm_per_minute=3"], "path.feed_mm_per_min"), (plan + ["--set", "nothing"], "NAME=VALUE"),
                 (plan + ["--set", "path.feed_mm_per_min=0"], "positive"),
                 (plan + ["--set", "path.feed_mm_per_min=none"], "path.feed_mm_per_min"),
                 (plan + ["--set", "tool.side=up"], "tool.side"),
