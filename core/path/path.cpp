@@ -20,6 +20,9 @@ using curve::Side;
 // Shares of the nodes that follow length, turning and the slope of the curvature.
 constexpr double kLengthShare = 0.5, kTurnShare = 0.25, kSwingShare = 0.25;
 constexpr int kLeastCellsBesideRest = 4;
+// Between two tight corners the motion speeds up and slows down: one cell would hold it at the corners'
+// speed.
+constexpr int kLeastCellsBesideBend = 4;
 // Under a jerk limit a bend that comes and goes within one cell would be seen at its ends only.
 constexpr int kLeastCellsInBend = 3;
 // Toward a stop cells shrink in proportion to their distance from it, down to this part of the way between
@@ -110,6 +113,14 @@ class Density {
   double grading_ = kGrading;
 };
 
+// True where the stretch before or after is bent far more tightly, so that the motion leaves or nears it
+// slowly.
+bool isBesideTighterBend(const std::vector<Stretch>& all, std::size_t i) {
+  const auto bend = [&all](std::size_t j) { return all[j].turn.back() / all[j].length; };
+  constexpr double kMuch = 4.0;
+  return (i > 0 && bend(i - 1) > kMuch * bend(i)) || (i + 1 < all.size() && bend(i + 1) > kMuch * bend(i));
+}
+
 void addNode(Path& path, const contour::Contour& contour, std::uint32_t segment, double u, double s,
              Side side) {
   const Curve& c = contour.segments[segment].curve;
@@ -189,8 +200,11 @@ Result<Path> buildPath(const contour::Contour& contour, const Options& options, 
     if (control.isCancelled()) return Error{ErrorCode::cancelled, "cancelled"};
     const std::vector<double> cells = density.along(stretch, u, s);
     double count = std::max(1.0, std::round(cells.back()));
+    if (isBesideTighterBend(stretches->list, static_cast<std::size_t>(&stretch - stretches->list.data())))
+      count = std::max<double>(count, kLeastCellsBesideBend);
     if (density.besideRest(stretch)) count = std::max<double>(count, kLeastCellsBesideRest);
-    if (options.gradeAtStops && stretch.swing.back() > 0.0) count = std::max<double>(count, kLeastCellsInBend);
+    if (options.gradeAtStops && stretch.swing.back() > 0.0)
+      count = std::max<double>(count, kLeastCellsInBend);
     addStretch(path, *shared, stretch, equalShares(u, cells, static_cast<std::size_t>(count)));
     done += stretch.length;
     control.report(done / stretches->length);
